@@ -1,0 +1,1 @@
+"""The calculation of Hexlipse: projects, margins, files. It never imports the screen."""

@@ -1,0 +1,185 @@
+"""The numbers of all cells: equivalents kept, least margins over groups of cases, and what a changed part replaces."""
+
+from __future__ import annotations
+
+import os
+from collections.abc import Callable, Iterator
+from concurrent.futures import ThreadPoolExecutor
+from dataclasses import dataclass
+
+import numpy as np
+import numpy.typing as npt
+
+from engine.criteria import equivalents_into
+from engine.envelope import TOLERANCE, Places
+from engine.frozen import Array
+from engine.influence import Influence
+from engine.loads import LoadSets
+from engine.rating import Rating
+
+GROUP = 32
+"""Cases to a group of least margins: a relieved case is governed again from its group and the other groups' least."""
+BLOCK = 32768
+"""Cells computed at a time, so that the kernel's buffers stay in cache."""
+PARALLEL = 100_000
+"""Cells from which a second thread pays."""
+Rows = slice | Places
+Flags = npt.NDArray[np.bool_]
+
+
+def groups_of(cases: int) -> int:
+    """How many groups cases fall into."""
+    return -(-cases // GROUP)
+
+
+def hydrostatic_flags(trace: Array, rating: Rating, rows: Places, columns: Places | slice) -> Flags:
+    """Cells whose hydrostatic tension is beyond what yield margins can vouch for.
+
+    Sum of principals x point factor above 4 x yield / required factor, the larger factor of the two theories: the form
+    of ASME BPVC VIII-2, 5.3.2. trace: (rows, columns) sums of principal stresses.
+    """
+    total = trace * rating.factor[0, rows][:, None]
+    bound = 4.0 * rating.strength[0, 1][:, columns] / np.fmax(rating.required[0, 0], rating.required[0, 1])[columns]
+    with np.errstate(invalid="ignore"):
+        return np.asarray(total > bound[rating.of_point[rows]] * (1 + TOLERANCE))
+
+
+@dataclass(eq=False, slots=True)
+class Equivalents:
+    """Equivalent stresses of a block of cells, theory first, and which are under hydrostatic tension."""
+
+    values: Array
+    """(2, rows, columns): by theory, stress unit; NaN where the stress is not known."""
+    hydrostatic: Flags
+    """(rows, columns)."""
+
+
+def equivalents_of(
+    influence: Influence, sets: LoadSets, rating: Rating, rows: Places, columns: Places, of_case: Places, local: Rows
+) -> Equivalents:
+    """Equivalents of a block.
+
+    rows: of the project; local: the same points in `influence`; columns: among the checked cases; of_case: places of
+    the checked cases among all cases.
+    """
+    stress = influence.stress(local, sets, of_case[columns])
+    shape = stress.shape[1:]
+    values = np.empty((2, *shape))
+    flat = np.ascontiguousarray(stress).reshape(6, -1)
+    equivalents_into(flat, values[0].reshape(-1), values[1].reshape(-1))
+    return Equivalents(values, hydrostatic_flags(stress[:3].sum(axis=0), rating, rows, columns))
+
+
+def margins_of(values: Array, rating: Rating, rows: Places, columns: Places | slice, limit: int) -> Array:
+    """(2, rows, columns) margins of a limit by theory from (2, rows, columns) equivalents.
+
+    strength / (required factor x point factor x equivalent) - 1; infinite where there is no stress, NaN where
+    something is not known or not asked.
+    """
+    factor = rating.factor[limit, rows][:, None]
+    classes = rating.of_point[rows]
+    found = np.empty(values.shape)
+    with np.errstate(divide="ignore", invalid="ignore"):
+        for theory in range(2):
+            allowable = rating.allowable[limit, theory][:, columns][classes]
+            np.multiply(values[theory], factor, out=found[theory])
+            np.divide(allowable, found[theory], out=found[theory])
+    found -= 1.0
+    return found
+
+
+def missing_of(values: Array, rating: Rating, rows: Places, columns: Places | slice) -> Flags:
+    """(rows, columns): cells of which an asked limit lacks its stress or its strength."""
+    found: Flags = np.isnan(values[1]) & rating.asked[:, columns].any(axis=0)
+    for limit in rating.limits:
+        lacking = np.isnan(rating.allowable[limit, 1][:, columns]) & rating.asked[limit, columns]
+        if lacking.any():
+            found |= lacking[rating.of_point[rows]]
+    return found
+
+
+def group_least(margins: Array) -> Array:
+    """(..., groups): least margin of each group of cases, NaN where none is known. margins: (..., columns)."""
+    columns = margins.shape[-1]
+    count = groups_of(columns)
+    if count * GROUP != columns:
+        padded = np.full((*margins.shape[:-1], count * GROUP), np.nan)
+        padded[..., :columns] = margins
+        margins = padded
+    least: Array = np.fmin.reduce(margins.reshape(*margins.shape[:-1], count, GROUP), axis=-1)
+    return least
+
+
+def least_of(values: Array, rating: Rating, rows: Places) -> Array:
+    """(2 limits, 2 theories, rows, groups): least margins of whole rows of equivalents (2, rows, all columns)."""
+    found = np.full((2, 2, len(rows), groups_of(values.shape[2])), np.nan)
+    for limit in rating.limits:
+        found[limit] = group_least(margins_of(values, rating, rows, slice(None), limit))
+    return found
+
+
+@dataclass(eq=False, slots=True)
+class Governed:
+    """What governs some points, by theory."""
+
+    least: Array
+    """(2, rows)."""
+    case: Places
+    """(2, rows): first case in file order with it, -1 where none is known."""
+    limit: Places
+    """(2, rows)."""
+
+
+def govern(values: Callable[[int, Places, Places], Array], least: Array, rating: Rating, rows: Places, cases: int) -> Governed:
+    """Least margin of each row and the first case and limit that have it.
+
+    values(theory, rows, columns): equivalents of (rows, n) cells, columns (rows, n); least: (2, 2, rows, groups).
+    Only the first group that holds a candidate is read again.
+    """
+    found = Governed(np.full((2, len(rows)), np.nan), np.full((2, len(rows)), -1), np.zeros((2, len(rows)), dtype=np.intp))
+    if not cases or not len(rows):
+        return found
+    found.least = np.fmin.reduce(np.fmin.reduce(least, axis=0), axis=-1)
+    for theory in range(2):
+        bound = found.least[theory] + TOLERANCE
+        with np.errstate(invalid="ignore"):
+            candidate = (least[0, theory] <= bound[:, None]) | (least[1, theory] <= bound[:, None])
+        first = np.argmax(candidate, axis=1)
+        columns = np.minimum(first[:, None] * GROUP + np.arange(GROUP), cases - 1)
+        equivalent = values(theory, rows, columns)
+        within = np.empty((2, *columns.shape), dtype=bool)
+        for limit in range(2):
+            allowable = rating.allowable[limit, theory][rating.of_point[rows][:, None], columns]
+            with np.errstate(divide="ignore", invalid="ignore"):
+                within[limit] = allowable / (equivalent * rating.factor[limit, rows][:, None]) - 1.0 <= bound[:, None]
+        place = np.argmax(within[0] | within[1], axis=1)
+        at = np.arange(len(rows))
+        known = ~np.isnan(found.least[theory])
+        found.case[theory] = np.where(known, columns[at, place], -1)
+        found.limit[theory] = np.where(known & ~within[0, at, place], 1, 0)
+    return found
+
+
+def blocks(rows: int, columns: int) -> Iterator[Places]:
+    """Runs of rows of about BLOCK cells."""
+    step = max(1, BLOCK // max(columns, 1))
+    for start in range(0, rows, step):
+        yield np.arange(start, min(start + step, rows))
+
+
+def threads_for(cells: int) -> int:
+    """How many threads a computation of so many cells is worth."""
+    return min(2, os.cpu_count() or 1) if cells >= PARALLEL else 1
+
+
+def each(work: Callable[[Places], None], rows: int, columns: int) -> None:
+    """Run `work` on runs of rows, on two threads where that pays (NumPy releases the lock in its loops)."""
+    runs = blocks(rows, columns)
+    count = threads_for(rows * columns)
+    if count == 1:
+        for run in runs:
+            work(run)
+        return
+    with ThreadPoolExecutor(count) as pool:
+        for _ in pool.map(work, runs):
+            continue

@@ -1,0 +1,89 @@
+"""What stress may reach: strength over required factor, by point, case, limit and theory."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+
+import numpy as np
+import numpy.typing as npt
+
+from engine.frozen import Array, FrozenMap
+from engine.material import LIMITS, THEORIES, strengths
+from engine.project import Case, Point, Project
+
+
+class Rating:
+    """Strengths and factors of a project's cells. Points that share material and temperature share a class.
+
+    Arrays by limit and theory stand in the order of LIMITS and THEORIES.
+    """
+
+    __slots__ = ("allowable", "asked", "classes", "factor", "of_point", "required", "strength", "temperature")
+
+    required: Array
+    """(2, 2, cases): required factors; NaN where a limit is not asked."""
+    asked: npt.NDArray[np.bool_]
+    """(2, cases): whether the case's category asks for the limit."""
+    strength: Array
+    """(2, 2, classes, cases), stress unit; NaN where not known."""
+    allowable: Array
+    """(2, 2, classes, cases): strength over required factor; NaN where not known or not asked."""
+    temperature: Array
+    """(classes, cases); NaN where not given."""
+    of_point: npt.NDArray[np.intp]
+    """(points,): class of each."""
+    factor: Array
+    """(2, points): point factors by limit."""
+
+    def __init__(self, project: Project) -> None:
+        cases = project.checked
+        self._set_required(project, cases)
+        plain = np.array([np.nan if c.temperature is None else c.temperature for c in cases], dtype=np.float64)
+        self.classes: dict[tuple[str, float | FrozenMap[float] | None], int] = {}
+        self._set_points(project.points)
+        self.temperature = np.empty((len(self.classes), len(cases)))
+        self.strength = np.empty((2, 2, len(self.classes), len(cases)))
+        materials = {material.name: material for material in project.materials}
+        for (name, given), row in self.classes.items():
+            self.temperature[row] = _cell_temperature(given, plain, cases)
+            found = strengths(materials[name], self.temperature[row])
+            for i, limit in enumerate(LIMITS):
+                for j, theory in enumerate(THEORIES):
+                    self.strength[i, j, row] = found[limit][theory]
+        self.allowable = self.strength / self.required[:, :, None, :]
+
+    def _set_required(self, project: Project, cases: Sequence[Case]) -> None:
+        categories = {category.name: category for category in project.categories}
+        self.required = np.full((2, 2, len(cases)), np.nan)
+        self.asked = np.zeros((2, len(cases)), dtype=bool)
+        for column, case in enumerate(cases):
+            for i, limit in enumerate(LIMITS):
+                factors = categories[case.category].required(limit)
+                if factors is not None:
+                    self.required[i, :, column] = factors.tresca, factors.von_mises
+                    self.asked[i, column] = True
+
+    def _set_points(self, points: Sequence[Point]) -> None:
+        classes = self.classes
+        keys = [(point.material, point.temperature) for point in points]
+        self.of_point = np.array([classes.setdefault(key, len(classes)) for key in keys], dtype=np.intp)
+        self.factor = np.array([[p.factor.yield_ for p in points], [p.factor.ultimate for p in points]], dtype=np.float64)
+
+    @property
+    def limits(self) -> list[int]:
+        """Places in LIMITS of those that any case asks for."""
+        return [i for i in range(len(LIMITS)) if self.asked[i].any()]
+
+    def of_row(self, row: int) -> Array:
+        """(2, 2, cases): allowable stress at a point, point factor included."""
+        allowable: Array = self.allowable[:, :, self.of_point[row]] / self.factor[:, row][:, None, None]
+        return allowable
+
+
+def _cell_temperature(given: float | FrozenMap[float] | None, plain: Array, cases: Sequence[Case]) -> Array:
+    """The point's temperature, else the case's, by case."""
+    if given is None:
+        return plain
+    if isinstance(given, FrozenMap):
+        return np.array([given.get(case.name, plain[i]) for i, case in enumerate(cases)], dtype=np.float64)
+    return np.full_like(plain, given)

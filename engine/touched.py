@@ -1,0 +1,124 @@
+"""What an edit touched, as far as margins go. Identity names the candidates, resolved numbers decide."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from typing import Any
+
+import numpy as np
+
+from engine.envelope import Places
+from engine.loads import Case, LoadSets
+from engine.project import Project
+from engine.rating import Rating
+from engine.table import MarginTable
+
+FEW = 8
+"""Up to one column in so many is worth computing by columns."""
+
+
+@dataclass(eq=False, slots=True)
+class Touched:
+    """Places of what has to be computed again, and the new state's load sets and rating."""
+
+    rows: Places
+    """Points whose stress may have changed."""
+    rated: Places
+    """Other points whose strength or factors changed."""
+    columns: Places
+    """Checked cases of which something changed."""
+    sets: LoadSets
+    """Resolved load sets of the new state."""
+    rating: Rating
+    """Strengths and factors of the new state."""
+
+
+def between(table: MarginTable, new: Project) -> Touched | None:
+    """What to compute to get from a table to a project; None where everything is."""
+    old = table.project
+    if not _comparable(old, new):
+        return None
+    cases = _differing(old.cases, new.cases)
+    rows = _differing(old.points, new.points)
+    sets, columns = _columns(table, new, cases)
+    rating = _rating(table, new, cases, rows)
+    rated: Places = np.empty(0, dtype=np.intp)
+    if rating is not table.rating:
+        rated, more = _rated(table.rating, rating)
+        columns = np.union1d(columns, more)
+        rated = np.setdiff1d(rated, rows)
+    points, checked = table.shape
+    if len(rows) * 2 > points or len(columns) * 2 > checked:
+        return None
+    return Touched(np.array(rows, dtype=np.intp), rated, columns, sets, rating)
+
+
+def _differing(old: Sequence[Any], new: Sequence[Any]) -> list[int]:
+    """Places at which two equally long sequences do not hold the same object."""
+    return [] if old is new else [i for i, (a, b) in enumerate(zip(old, new, strict=True)) if a is not b]
+
+
+def _comparable(old: Project, new: Project) -> bool:
+    """Whether rows, columns and loads of two states stand for the same things, place by place."""
+    if len(old.points) != len(new.points) or len(old.cases) != len(new.cases):
+        return False
+    if old.loads is not new.loads and [(x.name, x.sense) for x in old.loads] != [(x.name, x.sense) for x in new.loads]:
+        return False
+    return old.cases is new.cases or [c.check for c in old.cases] == [c.check for c in new.cases]
+
+
+def _columns(table: MarginTable, new: Project, cases: list[int]) -> tuple[LoadSets, Places]:
+    none: Places = np.empty(0, dtype=np.intp)
+    old = table.project.cases
+    if not cases:
+        return table.sets, none
+    if all(_same_stress(old[i], new.cases[i]) for i in cases):
+        return table.sets.relabelled(new.cases), none
+    if any(old[i].name != new.cases[i].name for i in cases):
+        sets = LoadSets(new.loads, new.cases)
+        affected = [sets.place[name] for name in sets.reached([new.cases[i].name for i in cases])]
+    else:
+        sets, affected = table.sets.updated(new.cases, cases)
+    return sets, np.flatnonzero(np.isin(table.of_case, affected))
+
+
+def _same_stress(old: Case, new: Case) -> bool:
+    return old.name == new.name and old.loads == new.loads and old.combine == new.combine
+
+
+def _rating(table: MarginTable, new: Project, cases: list[int], rows: list[int]) -> Rating:
+    old = table.project
+
+    def of_case(case: Case) -> tuple[Any, ...]:
+        return case.name, case.category, case.temperature
+
+    same = (
+        old.categories is new.categories
+        and old.materials is new.materials
+        and all(of_case(old.cases[i]) == of_case(new.cases[i]) for i in cases)
+        and all(
+            (old.points[i].material, old.points[i].temperature, old.points[i].factor)
+            == (new.points[i].material, new.points[i].temperature, new.points[i].factor)
+            for i in rows
+        )
+    )
+    return table.rating if same else Rating(new)
+
+
+def _rated(old: Rating, new: Rating) -> tuple[Places, Places]:
+    """Rows and columns whose strengths or factors differ; a column is named where only few do."""
+    pairs, which = np.unique(np.stack([old.of_point, new.of_point]), axis=1, return_inverse=True)
+    differ = np.zeros((pairs.shape[1], old.asked.shape[1]), dtype=bool)
+    for i, (a, b) in enumerate(pairs.T):
+        for before, after in ((old.allowable, new.allowable), (old.strength, new.strength)):
+            x, y = before[:, :, a], after[:, :, b]
+            differ[i] |= ~((x == y) | (np.isnan(x) & np.isnan(y))).all(axis=(0, 1))
+    differ |= (old.asked != new.asked).any(axis=0)
+    columns: Places = np.flatnonzero(differ.any(axis=0))
+    if len(columns) * FEW <= differ.shape[1]:
+        differ[:, columns] = False
+    else:
+        columns = np.empty(0, dtype=np.intp)
+    factors = (old.factor != new.factor).any(axis=0)
+    return np.flatnonzero(differ.any(axis=1)[which.reshape(-1)] | factors), columns

@@ -1,0 +1,1 @@
+"""The screen and the command of Hexlipse. It computes nothing that an engineer would check."""
