@@ -48,10 +48,8 @@ class Members:
 
     def _write_whole(self, changes: Changes) -> None:
         texts = ", ".join(text for _, texts in sorted(self._fresh.items()) for text in texts)
-        if self.node.kind == "array":
-            new = f"[{texts}]"
-        else:
-            new = f"{{ {texts} }}" if texts else "{}"
+        table = f"{{ {texts} }}" if texts else "{}"
+        new = f"[{texts}]" if self.node.kind == "array" else table
         changes.replace(self.node.start, self.node.end, new)
 
     def _runs(self) -> Iterator[list[int]]:

@@ -129,7 +129,7 @@ def _outside(material: Material, rating: Rating, place: int) -> Flags:
     if material.yield_at:
         return np.zeros(given.shape, dtype=bool)
     if material.range is None:
-        return ~np.isnan(given)
+        return np.asarray(~np.isnan(given))
     outside: Flags = (given < material.range[0]) | (given > material.range[1])
     return outside
 
@@ -148,7 +148,7 @@ def _plain_ultimate(material: Material, rating: Rating, place: int) -> Flags:
 
 
 def _elastic(table: MarginTable, rows: slice) -> Flags:
-    """(rows, cases): ultimate is asked, and the elastic stress is above a yield strength."""
+    """(rows, cases): ultimate is tested, and the elastic stress is above a yield strength."""
     rating = table.rating
     classes = rating.of_point[rows]
     asked = np.flatnonzero(rating.asked[1])
@@ -159,6 +159,7 @@ def _elastic(table: MarginTable, rows: slice) -> Flags:
         for theory in range(2):
             bound = rating.strength[0, theory][:, asked][classes] * (1 + TOLERANCE)
             found[:, asked] |= table.values[theory, rows][:, asked] > bound
+    found[:, asked] &= ~np.isnan(rating.strength[1, 1][:, asked])[classes]
     return found
 
 

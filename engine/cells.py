@@ -130,13 +130,17 @@ class Governed:
     """(2, rows)."""
 
 
-def govern(values: Callable[[int, Places, Places], Array], least: Array, rating: Rating, rows: Places, cases: int) -> Governed:
+def govern(
+    values: Callable[[int, Places, Places], Array], least: Array, rating: Rating, rows: Places, cases: int
+) -> Governed:
     """Least margin of each row and the first case and limit that have it.
 
     values(theory, rows, columns): equivalents of (rows, n) cells, columns (rows, n); least: (2, 2, rows, groups).
     Only the first group that holds a candidate is read again.
     """
-    found = Governed(np.full((2, len(rows)), np.nan), np.full((2, len(rows)), -1), np.zeros((2, len(rows)), dtype=np.intp))
+    found = Governed(
+        np.full((2, len(rows)), np.nan), np.full((2, len(rows)), -1), np.zeros((2, len(rows)), dtype=np.intp)
+    )
     if not cases or not len(rows):
         return found
     found.least = np.fmin.reduce(np.fmin.reduce(least, axis=0), axis=-1)

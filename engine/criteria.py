@@ -64,6 +64,9 @@ within 9e-17 of its size; a minimax fit made at 60 digits."""
 IN_PLANE = 1e-9
 """Relative difference within which the in-plane shear is the greatest shear there is."""
 
+PLANE_ROWS = (0, 1, 3)
+"""Rows xx, yy, xy of a stress array: all there is in a plane state."""
+
 CYCLE = ((0, 1, 2), (1, 2, 0), (2, 0, 1))
 
 Form = Callable[[Floats, Floats, Floats], None]
@@ -191,7 +194,7 @@ class _Work(threading.local):
         self._store = _aligned((3 * _Room.TRIPLES + _Room.SINGLES) * BLOCK)
         self._room = _Room(self._store, 1)
         self.gathered = _aligned(8 * BLOCK).reshape(8, BLOCK)
-        self.is_plane = np.empty(BLOCK, dtype=np.bool_)
+        self.flags = np.empty((2, BLOCK), dtype=np.bool_)
 
     def room(self, n: int) -> _Room:
         """The work rows cut to n states, lying end to end so that three are one run of memory."""
@@ -212,9 +215,11 @@ _WORK = _Work()
 
 def _block(stress: Floats, tresca: Floats, von_mises: Floats) -> None:
     """At most BLOCK states, each by the form that is its own whatever the block holds besides."""
-    is_plane = np.equal(stress[2], 0.0, out=_WORK.is_plane[: stress.shape[1]])
+    is_plane, is_zero = _WORK.flags[:, : stress.shape[1]]
+    np.equal(stress[2], 0.0, out=is_plane)
     if is_plane.any():
-        is_plane &= (stress[4] == 0.0) & (stress[5] == 0.0)
+        for shear in stress[4:]:
+            is_plane &= np.equal(shear, 0.0, out=is_zero)
     plane = np.count_nonzero(is_plane)
     if plane == 0:
         _general(stress, tresca, von_mises)
@@ -226,9 +231,10 @@ def _block(stress: Floats, tresca: Floats, von_mises: Floats) -> None:
 
 
 def _gathered(form: Form, chosen: NDArray[np.intp], stress: Floats, tresca: Floats, von_mises: Floats) -> None:
+    """The states at `chosen` by `form`, brought together first."""
     rows = _WORK.gathered[:, : chosen.size]
-    for component, row in zip(stress, rows, strict=False):
-        np.take(component, chosen, out=row, mode="clip")  # the other modes would copy `out`
+    for component in PLANE_ROWS if form is _plane else range(6):
+        np.take(stress[component], chosen, out=rows[component], mode="clip")  # other modes would copy `out`
     form(rows[:6], rows[6], rows[7])
     tresca[chosen], von_mises[chosen] = rows[6], rows[7]
 
@@ -249,13 +255,13 @@ def _plane(stress: Floats, tresca: Floats, von_mises: Floats) -> None:
     _plane_form((stress[0], stress[1], stress[3]), tresca, von_mises)
     bad = _out_of_range(von_mises)
     if bad.size:
-        parts = np.stack([stress[row, bad] for row in (0, 1, 3)])
+        parts = np.stack([stress[row, bad] for row in PLANE_ROWS])
         _repair(_plane_form, parts, bad, tresca, von_mises)
 
 
 def _out_of_range(von_mises: Floats) -> NDArray[np.intp]:
     """Where squares or sixth powers were not safe, or there is no stress, or the state is not finite."""
-    if LEAST < von_mises.min() and von_mises.max() < MOST:  # False for NaN
+    if von_mises.min() > LEAST and von_mises.max() < MOST:  # not so if one is NaN
         return np.empty(0, dtype=np.intp)
     return np.flatnonzero(~((von_mises > LEAST) & (von_mises < MOST)))
 
@@ -328,7 +334,7 @@ def _plane_tresca(c: Floats, R: Floats, tresca: Floats) -> None:
     np.absolute(c, tresca)
     add(tresca, R, tresca)
     add(R, R, R)
-    np.maximum(tresca, R, tresca)
+    np.maximum(tresca, R, out=tresca)
 
 
 def _general_form(parts: Floats, tresca: Floats, von_mises: Floats) -> None:
@@ -345,7 +351,7 @@ def _from_differences(room: _Room, s: _Triple, tresca: Floats, von_mises: Floats
     """
     K, y = room.K, room.y
     _products(room, s)
-    _three_J2(room.f.rows, room.ss.rows, K)
+    _three_j2(room.f.rows, room.ss.rows, K)
     _discriminant(room, s, y)
     sqrt(y, y)
     sqrt(K, von_mises)
@@ -366,7 +372,7 @@ def _cyclic(factors: _Triple, out: _Triple) -> None:
         multiply(factors.rows[j], factors.rows[k], out.rows[i])
 
 
-def _three_J2(dd: Sequence[Floats], ss: Sequence[Floats], K: Floats) -> None:
+def _three_j2(dd: Sequence[Floats], ss: Sequence[Floats], K: Floats) -> None:
     add(ss[0], ss[1], K)
     add(K, ss[2], K)
     multiply(K, 3.0, K)
@@ -377,13 +383,13 @@ def _three_J2(dd: Sequence[Floats], ss: Sequence[Floats], K: Floats) -> None:
 def _discriminant(room: _Room, s: _Triple, D: Floats) -> None:
     d, f, ss, plus, minus = room.d, room.f, room.ss, room.plus, room.minus
     add(f.whole, ss.whole, f.whole)
-    _M(room, D)
+    _triple_terms(room, D)
     multiply(D, D, D)
     multiply(d.whole, s.whole, d.whole)
     multiply(f.whole, s.whole, f.whole)
     add(minus.whole, d.whole, plus.whole)
     subtract(minus.whole, d.whole, minus.whole)
-    _A_and_B(room, s)
+    _paired_terms(room, s)
     multiply(f.whole, f.whole, f.whole)
     total = f.rows[0]
     add(total, f.rows[1], total)
@@ -395,7 +401,7 @@ def _discriminant(room: _Room, s: _Triple, D: Floats) -> None:
     add(D, total, D)
 
 
-def _M(room: _Room, M: Floats) -> None:
+def _triple_terms(room: _Room, M: Floats) -> None:
     """d0 f0 + d1 s1^2 + d2 s2^2, which is d0 d1 d2 + sum d_i s_i^2."""
     d, ss, term = room.d.rows, room.ss.rows, room.term
     multiply(d[0], room.f.rows[0], M)
@@ -404,7 +410,7 @@ def _M(room: _Room, M: Floats) -> None:
         add(M, term, M)
 
 
-def _A_and_B(room: _Room, s: _Triple) -> None:
+def _paired_terms(room: _Room, s: _Triple) -> None:
     """A_i - B_i into `f`, which holds s_i f_i, and A_i B_i into `plus`, in whatever order.
 
     `plus` and `minus` hold s_j s_k + d_i s_i and s_j s_k - d_i s_i.

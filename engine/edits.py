@@ -237,7 +237,7 @@ def _part(project: Project, kind: str, name: str) -> Any:
     if kind not in PLURAL:
         raise Refusal(f"there is no kind of part called {shown(kind)}")
     try:
-        return project.find(cast(Kind, kind), name)
+        return project.find(kind, name)
     except KeyError:
         raise Refusal(f"no {kind} is named {shown(name)}") from None
 

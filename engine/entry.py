@@ -1,9 +1,9 @@
 """What a person types in a numeric cell: arithmetic, then perhaps a unit.
 
 Python's own grammar gives precedence and brackets (`ast`, never evaluated as code): `-2**2` is -4.
-The value is held as an exact fraction up to a fixed size and rounded once at the end, so that what was typed in
-decimals comes out in decimals: 0.1+0.2 is 0.3, 1.1*3 kN is 3300 N. Beyond that size, and for powers that have no
-exact value of that size, it is computed in floats, so that no entry takes long.
+The value is an exact fraction, rounded once at the end, so that what was typed in decimals comes out in decimals:
+0.1+0.2 is 0.3, 1.1*3 kN is 3300 N. Only a power can grow without measure; where it has no exact value of modest size
+it is computed in floats, so that no entry takes long.
 """
 
 import ast
@@ -12,14 +12,14 @@ import re
 from collections.abc import Callable, Sequence
 from fractions import Fraction
 
-from .figures import number_text
-from .units import Kind, UnitError, UnitSystem, convert, described, find, quoted
+from engine.figures import number_text
+from engine.units import Kind, UnitError, UnitSystem, convert, described, find, quoted
 
 LONGEST = 200
 """Characters of one entry."""
 DEEPEST = 30
 """Brackets inside each other."""
-_EXACT_BITS = 4096
+_EXACT_BITS = 4096  # the size of an exact power; with the length of an entry it bounds every value and all time
 _AWAITING = ("+", "-", "*", "/", "**", "//", "(")
 _OPEN = "a bracket is not closed"
 _NUMBER = r"(?:[0-9]+\.?[0-9]*|\.[0-9]+)(?:[eE][+-]?[0-9]+)?"
@@ -235,7 +235,7 @@ def _value(node: ast.expr, source: str) -> Fraction:
         case ast.UnaryOp(op=ast.USub(), operand=operand):
             return -_value(operand, source)
         case ast.BinOp(left=left, op=sign, right=right) if type(sign) in _OPERATIONS:
-            return _held(_OPERATIONS[type(sign)](_value(left, source), _value(right, source)))
+            return _OPERATIONS[type(sign)](_value(left, source), _value(right, source))
     raise EntryError(f"this is not read: {_READ}")
 
 
@@ -275,11 +275,6 @@ _OPERATIONS: dict[type[ast.operator], Callable[[Fraction, Fraction], Fraction]] 
 
 def _bits(value: Fraction) -> int:
     return value.numerator.bit_length() + value.denominator.bit_length()
-
-
-def _held(value: Fraction) -> Fraction:
-    """The value itself, or its float where its digits have grown too many."""
-    return value if _bits(value) <= _EXACT_BITS else Fraction(_rounded(value))
 
 
 def _rounded(value: Fraction) -> float:

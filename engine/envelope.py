@@ -109,7 +109,9 @@ class Envelope:
         """What governs a point under one theory."""
         row = 0 if theory == "tresca" else 1
         case = int(self.case[row, point])
-        return Governing(case, int(self.limit[row, point]), theory if case >= 0 else None, float(self.least[row, point]), point)
+        return Governing(
+            case, int(self.limit[row, point]), theory if case >= 0 else None, float(self.least[row, point]), point
+        )
 
     def of_point(self, point: int) -> Governing:
         """What governs a point over the accepted theories; among equals the first in file order."""

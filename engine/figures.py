@@ -64,9 +64,9 @@ def margin_texts(margins: npt.ArrayLike, decimals: int = 2) -> list[str]:
     usual = np.abs(values) <= LARGEST  # false for nan too; the rest, tolerance and all, is left to the scalar form
     held = np.where(usual, values, 0.0)
     steps = np.floor(held * scale)
-    steps += (steps + 1) / scale - held <= TOLERANCE
+    steps += (steps + 1) / scale - held <= TOLERANCE  # adding, be it nothing, also makes 0.0 of -0.0
     shown = f"%+.{decimals}f"
-    texts = [shown % step for step in ((steps + 0.0) / scale).tolist()]
+    texts = [shown % step for step in (steps / scale).tolist()]
     for at in np.flatnonzero(~usual).tolist():
         texts[at] = _special(values.item(at)) or margin_text(values.item(at), decimals)
     return texts

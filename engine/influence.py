@@ -64,7 +64,7 @@ class Influence:
         if len(cases) == 1:  # BLAS takes another path for one column, with another last bit: pad to two
             magnitudes = np.concatenate([magnitudes, magnitudes])
         with np.errstate(over="ignore", invalid="ignore"):
-            block = np.matmul(self.per_load[:, rows], magnitudes.T)[:, :, : len(cases)]
+            block: Array = np.matmul(self.per_load[:, rows], magnitudes.T)[:, :, : len(cases)]
             unknown = self.unknown[rows]
             if unknown.any():
                 acting = (magnitudes[: len(cases)] != 0).T
@@ -169,7 +169,11 @@ def why_missing(point: Point, case: Case, project_loads: Sequence[Load], sets: L
 def _why_linear(point: Point, case: Case, project_loads: Sequence[Load], sets: LoadSets) -> str:
     magnitudes = sets.magnitudes[sets.place[case.name]]
     acting = [load for load, value in zip(project_loads, magnitudes, strict=True) if value != 0]
-    felt = [load for load in acting if load.name in point.per_load or (point.not_felt != "rest" and load.name not in point.not_felt)]
+    felt = [
+        load
+        for load in acting
+        if load.name in point.per_load or (point.not_felt != "rest" and load.name not in point.not_felt)
+    ]
     for load in felt:
         if load.sense != "fixed":
             return f"load {load.name} is {load.sense}, which is not computed yet"

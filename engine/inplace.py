@@ -39,12 +39,12 @@ class Hand:
     def table(self, node: Node, path: tuple[str, ...], old: Table, new: Table) -> None:
         """Makes a table say `new`. path: its key from the top of the file, places of lists left out."""
         names = self._renamed(node, old, new)
-        gone: list[str] = []
+        gone: dict[str, None] = {}
         for key, value in old.items():
             name = names.get(key, key)
             child = node.children[key]
             if name not in new or (child.kind == "table" and not isinstance(new[name], Mapping)):
-                gone.append(key)
+                gone[key] = None
                 continue
             if name != key and child.latest is not None:
                 part = child.latest.keys[-1]
@@ -84,7 +84,7 @@ class Hand:
             self._container(node).put_in(both - 1, self._spelling.value(new[place]))
 
     def _renamed(self, node: Node, old: Table, new: Table) -> dict[str, str]:
-        """Keys of the text that stay under another name: those that follow a part's new name, then any of equal value."""
+        """Keys that stay under another name: those that follow a part's new name, then any of equal value."""
         fresh = [key for key in new if key not in old]
         found: dict[str, str] = {}
         if not fresh:
@@ -105,7 +105,7 @@ class Hand:
             if container is not None:
                 for statement in child.statements():
                     self._container(container).take_out(statement)
-            elif child.header is not None:
+            elif child.kind == "table" and not child.depth:
                 self._take_table(child)
             else:
                 for statement in child.statements():

@@ -3,17 +3,19 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from typing import Any
 
 from engine.loads import Case, Cycle, Load, dependency_order
-from engine.project import KINDS, PLURAL, Acknowledgement, Kind, Point, Project
+from engine.project import KINDS, Acknowledgement, Kind, Point, Project
 from engine.reading import Fault, clean, did_you_mean, shown
 from engine.sections import Section
 from engine.units import SYSTEMS, UnitError, kind_of_load_unit
 
 CAUTION_NAMES = ("elongation", "hydrostatic-tension", "temperature", "factor-below-one")
 """The cautions that block, and so can be acknowledged."""
+MOST_HINTS = 50
+"""Names that nothing defines for which a similar one is looked up; more than messages ever show."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -22,6 +24,8 @@ class Names:
 
     of: Mapping[Kind, frozenset[str]]
     """By kind."""
+    hints: dict[tuple[Kind, str], str] = field(default_factory=dict, compare=False)
+    """What was looked up for a message so far: a search among all names, and a file may have thousands to look up."""
 
     @classmethod
     def in_project(cls, project: Project) -> Names:
@@ -46,7 +50,9 @@ class Names:
                 yield Fault((key, place), self._message(kind, name))
 
     def _message(self, kind: Kind, name: str) -> str:
-        return f"no {kind} is named {shown(name)}{did_you_mean(name, self.of[kind])}"
+        if len(self.hints) < MOST_HINTS and (kind, name) not in self.hints:
+            self.hints[kind, name] = did_you_mean(name, self.of[kind])
+        return f"no {kind} is named {shown(name)}{self.hints.get((kind, name), '')}"
 
 
 def of_part(kind: str, part: Any, project: Project, names: Names) -> list[Fault]:
@@ -104,7 +110,10 @@ def _of_place(point: Point, names: Names) -> Iterator[Fault]:
     if point.section:
         yield from names.needed("section", point.section, "section")
         if rows and point.axes is None:
-            yield Fault((), "has a section and rows of its own, expected axes: the x and y directions of its rows in the section's axes")
+            yield Fault(
+                (),
+                "has a section and rows of its own, expected axes: the x and y directions of its rows in the section's axes",
+            )
         if point.at is None:
             yield Fault((), "has a section, expected at = [y, z], its place on it")
     else:
@@ -140,7 +149,9 @@ def of_combinations(project: Project) -> list[Fault]:
             warm[name] = name
         elif source is not None:
             warm[name] = source
-            message = f"{shown(name)} combines {shown(source)}, which has a temperature, expected a temperature of its own"
+            message = (
+                f"{shown(name)} combines {shown(source)}, which has a temperature, expected a temperature of its own"
+            )
             faults.append(Fault(("case", place[name]), message))
     return faults
 
@@ -159,12 +170,19 @@ def faults(project: Project) -> list[Fault]:
     found: list[Fault] = []
     for kind in KINDS:
         for place, name in _duplicates(project.names(kind)):
-            found.append(Fault((kind, place, "name"), f"{shown(name)} is the name of an earlier {kind} too, expected each name once"))
+            found.append(
+                Fault(
+                    (kind, place, "name"),
+                    f"{shown(name)} is the name of an earlier {kind} too, expected each name once",
+                )
+            )
+        for place, part in enumerate(project.of(kind)):
+            found += [fault.under(kind, place) for fault in of_part(kind, part, project, names)]
     pairs = [(given.point, given.caution) for given in project.acknowledgements]
     for place, pair in _duplicates(pairs):
-        found.append(Fault(("acknowledge", place), f"{shown(pair[0])} {shown(pair[1])} is acknowledged twice, expected once"))
-    for kind in (*PLURAL, "acknowledge"):
-        parts: Iterable[Any] = project.acknowledgements if kind == "acknowledge" else project.of(kind)  # type: ignore[arg-type]
-        for place, part in enumerate(parts):
-            found += [fault.under(kind, place) for fault in of_part(kind, part, project, names)]
+        found.append(
+            Fault(("acknowledge", place), f"{shown(pair[0])} {shown(pair[1])} is acknowledged twice, expected once")
+        )
+    for place, given in enumerate(project.acknowledgements):
+        found += [fault.under("acknowledge", place) for fault in of_part("acknowledge", given, project, names)]
     return found + of_combinations(project)

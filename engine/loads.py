@@ -161,7 +161,13 @@ class LoadSets:
     def relabelled(self, cases: Sequence[Case]) -> LoadSets:
         """The sets of cases that differ in nothing that resolves: same names, loads and combinations."""
         new = object.__new__(LoadSets)
-        new.cases, new.columns, new.place, new.order, new.users = tuple(cases), self.columns, self.place, self.order, self.users
+        new.cases, new.columns, new.place, new.order, new.users = (
+            tuple(cases),
+            self.columns,
+            self.place,
+            self.order,
+            self.users,
+        )
         new.magnitudes, new.sizes = self.magnitudes, self.sizes
         return new
 

@@ -5,9 +5,9 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import Literal
 
-from engine.frozen import Array
-
 import numpy as np
+
+from engine.frozen import Array
 
 Table = tuple[tuple[float, float], ...]
 Limit = Literal["yield", "ultimate"]

@@ -19,7 +19,6 @@ from engine.cells import (
     margins_of,
     missing_of,
 )
-from engine.touched import Touched
 from engine.envelope import TOLERANCE, Envelope, Places
 from engine.frozen import Array
 from engine.influence import Influence
@@ -27,6 +26,7 @@ from engine.loads import LoadSets
 from engine.project import Project
 from engine.rating import Rating
 from engine.table import MarginTable
+from engine.touched import Touched
 
 CLOSE = 2 * TOLERANCE
 """A margin this near a least one may be it, or tie with it."""

@@ -8,8 +8,9 @@ import numpy as np
 import numpy.typing as npt
 
 from engine.frozen import Array, FrozenMap
+from engine.loads import Case
 from engine.material import LIMITS, THEORIES, strengths
-from engine.project import Case, Point, Project
+from engine.project import Point, Project
 
 
 class Rating:
@@ -67,7 +68,9 @@ class Rating:
         classes = self.classes
         keys = [(point.material, point.temperature) for point in points]
         self.of_point = np.array([classes.setdefault(key, len(classes)) for key in keys], dtype=np.intp)
-        self.factor = np.array([[p.factor.yield_ for p in points], [p.factor.ultimate for p in points]], dtype=np.float64)
+        self.factor = np.array(
+            [[p.factor.yield_ for p in points], [p.factor.ultimate for p in points]], dtype=np.float64
+        )
 
     @property
     def limits(self) -> list[int]:

@@ -7,6 +7,7 @@ import math
 import unicodedata
 from collections.abc import Callable, Iterable, Mapping
 from dataclasses import dataclass
+from datetime import date, time
 from typing import Any
 
 import numpy as np
@@ -55,6 +56,8 @@ def shown(value: Plain) -> str:
         return "a table"
     if isinstance(value, list | tuple):
         return f"a list of {len(value)}"
+    if isinstance(value, date | time):
+        return f"the date or time {value}"
     if isinstance(value, int) and abs(value) >= 10**15:
         return "a very large whole number"
     return repr(value)
@@ -62,12 +65,15 @@ def shown(value: Plain) -> str:
 
 def clean(text: str) -> str:
     """Text with each control or formatting character replaced, so that a terminal may show it."""
-    return "".join("\N{REPLACEMENT CHARACTER}" if unicodedata.category(c) in {"Cc", "Cf", "Zl", "Zp", "Cs"} else c for c in text)
+    return "".join(
+        "\N{REPLACEMENT CHARACTER}" if unicodedata.category(c) in {"Cc", "Cf", "Zl", "Zp", "Cs"} else c for c in text
+    )
 
 
 def did_you_mean(word: str, known: Iterable[str]) -> str:
     """' (did you mean "x"?)' where a known word is close, otherwise nothing."""
-    close = difflib.get_close_matches(word, list(known), n=1, cutoff=0.6)
+    spelt = {name.casefold(): name for name in known}
+    close = [spelt[found] for found in difflib.get_close_matches(word.casefold(), spelt, n=1, cutoff=0.6)]
     return f' (did you mean "{clean(close[0])}"?)' if close else ""
 
 
@@ -95,9 +101,11 @@ def number(above: float = -math.inf, least: float = -math.inf, most: float = mat
 
 
 def text(value: Plain) -> str:
-    """Any text."""
+    """Any text that a file can hold."""
     if not isinstance(value, str):
         raise refuse(value, "text in quotes")
+    if any("\ud800" <= c <= "\udfff" for c in value):
+        raise refuse(value, "text of whole characters")
     return value
 
 
@@ -120,7 +128,9 @@ def flag(value: Plain) -> bool:
 
 def choice(*options: str) -> Reader:
     """Reader of one of a few words."""
-    expected = ", ".join(f'"{o}"' for o in options[:-1]) + f' or "{options[-1]}"' if len(options) > 1 else f'"{options[0]}"'
+    expected = (
+        ", ".join(f'"{o}"' for o in options[:-1]) + f' or "{options[-1]}"' if len(options) > 1 else f'"{options[0]}"'
+    )
 
     def read(value: Plain) -> str:
         if not isinstance(value, str):

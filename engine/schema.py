@@ -126,7 +126,9 @@ def _components(value: Plain) -> tuple[str, ...]:
     try:
         permutation(names)
     except ValueError as error:
-        raise Unreadable(Fault((), f'found {reading.shown(value)}, expected "xx yy zz xy yz zx" in any order: {error}')) from None
+        raise Unreadable(
+            Fault((), f'found {reading.shown(value)}, expected "xx yy zz xy yz zx" in any order: {error}')
+        ) from None
     return names
 
 

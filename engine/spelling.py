@@ -63,7 +63,7 @@ class Spelling:
         return self.value(value)
 
     def _string_like(self, old: str, value: str) -> str:
-        if old.startswith(('"""', "'''")):
+        if "\n" in value:
             return self.text(value)
         if old.startswith("'") and not _NO_LITERAL.search(value):
             return f"'{value}'"

@@ -83,20 +83,22 @@ def point_report(table: MarginTable, row: int) -> dict[str, Any]:
 
 
 def _by_theory(table: MarginTable, row: int) -> dict[str, Any]:
-    found = {theory: table.envelope.by_theory(row, theory) for theory in THEORIES}
-    return {theory: governing(table.project, cell, with_theory=False) for theory, cell in found.items()}
+    found = [(theory, table.envelope.by_theory(row, theory)) for theory in THEORIES]
+    return {str(theory): governing(table.project, cell, with_theory=False) for theory, cell in found}
 
 
 def cells(table: MarginTable) -> Iterator[dict[str, Any]]:
     """Every cell for JSON: one object a point, case and limit that is asked."""
     project, rating = table.project, table.rating
     for row, point in enumerate(project.points):
-        margins = [table.margins(slice(row, row + 1), slice(None), limit)[:, 0].tolist() for limit in range(len(LIMITS))]
+        margins = [
+            table.margins(slice(row, row + 1), slice(None), limit)[:, 0].tolist() for limit in range(len(LIMITS))
+        ]
         values = table.values[:, row].tolist()
         for column, case in enumerate(project.checked):
             for i, limit in enumerate(LIMITS):
                 if rating.asked[i, column]:
-                    by_theory = {
+                    by_theory: dict[str, Any] = {
                         theory: {"equivalent": _number(values[j][column]), **figure(margins[i][j][column])}
                         for j, theory in enumerate(THEORIES)
                     }

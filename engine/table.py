@@ -97,7 +97,11 @@ class MarginTable:
         columns = np.arange(cases)
         values, hydrostatic = self.values, self.hydrostatic
         missing, tension = np.zeros(points, dtype=np.intp), np.zeros(points, dtype=np.intp)
-        least, case, limit = np.full((2, points), np.nan), np.full((2, points), -1), np.zeros((2, points), dtype=np.intp)
+        least, case, limit = (
+            np.full((2, points), np.nan),
+            np.full((2, points), -1),
+            np.zeros((2, points), dtype=np.intp),
+        )
 
         def block(rows: Places) -> None:
             run = slice(rows[0], rows[-1] + 1)

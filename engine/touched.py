@@ -114,11 +114,12 @@ def _rated(old: Rating, new: Rating) -> tuple[Places, Places]:
         for before, after in ((old.allowable, new.allowable), (old.strength, new.strength)):
             x, y = before[:, :, a], after[:, :, b]
             differ[i] |= ~((x == y) | (np.isnan(x) & np.isnan(y))).all(axis=(0, 1))
-    differ |= (old.asked != new.asked).any(axis=0)
+    differ |= np.logical_xor(old.asked, new.asked).any(axis=0)
     columns: Places = np.flatnonzero(differ.any(axis=0))
     if len(columns) * FEW <= differ.shape[1]:
         differ[:, columns] = False
     else:
         columns = np.empty(0, dtype=np.intp)
-    factors = (old.factor != new.factor).any(axis=0)
-    return np.flatnonzero(differ.any(axis=1)[which.reshape(-1)] | factors), columns
+    factors = np.not_equal(old.factor, new.factor).any(axis=0)
+    of_pair = np.asarray(differ.any(axis=1))
+    return np.flatnonzero(of_pair[which.reshape(-1)] | factors), columns

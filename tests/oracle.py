@@ -274,7 +274,7 @@ def limits_of(project: Table, case: Table) -> list[str]:
 def required(project: Table, case: Table, limit: str) -> dict[str, float]:
     """Required factor by theory."""
     factor = named(project, "category", case["category"])[limit]
-    return factor if isinstance(factor, dict) else dict.fromkeys(THEORIES, factor)
+    return {theory: float(factor[theory] if isinstance(factor, dict) else factor) for theory in THEORIES}
 
 
 def point_factor(point: Table, limit: str) -> float:

@@ -20,8 +20,8 @@ THEORIES = ("tresca", "von-mises")
 ORDER = ("xx", "yy", "zz", "xy", "yz", "zx")
 BLOCKING = ("elongation", "hydrostatic-tension", "temperature", "factor-below-one")
 KINDS = ("category", "material", "load", "case", "point", "acknowledge")
-NAMES = ("{p}{i:02d}", "{p} {i}", "{p}.{i}", "{p}-{i}_b", "{i}", "Kräfte {i}", "荷重{i}", "{p}'{i}", '"{p}" {i}')
-NAMES += ("[{p}] #{i}", "{p} = {i}, {p}", "{p}\\{i}", "{p}.{i}.x y")
+NAMES = ["{p}{i:02d}", "{p} {i}", "{p}.{i}", "{p}-{i}_b", "{i}", "Kräfte {i}", "荷重{i}", "{p}'{i}", '"{p}" {i}']
+NAMES += ["[{p}] #{i}", "{p} = {i}, {p}", "{p}\\{i}", "{p}.{i}.x y"]
 
 
 @dataclass(frozen=True)
@@ -93,7 +93,7 @@ class Maker:
     def settings(self, system: str) -> Table:
         """The [project] table."""
         title = self.rng.choice(["Slipway winch", "Kran 7, Stütze", 'The "old" bracket', "Wellenzapfen #3"])
-        table = {"title": title, "revision": self.rng.choice(["A", "B.2", "0"]), "units": system}
+        table: Table = {"title": title, "revision": self.rng.choice(["A", "B.2", "0"]), "units": system}
         table["components"] = " ".join(self.order)
         table["accept"] = self.rng.choice(["both", "both", *THEORIES])
         table["thin"] = self.thin
@@ -154,7 +154,8 @@ class Maker:
 
     def strengths_at(self, strength: float) -> list[list[float]]:
         """A table of strength by temperature."""
-        stops = self.rng.choice([[20.0, 150.0], [20.0, 60.0, 100.0, 200.0], [-50.0, 20.0, 300.0, 425.5], [60, 100]])
+        usual: list[list[float]] = [[20.0, 150.0], [20.0, 60.0, 100.0, 200.0], [-50.0, 20.0, 300.0, 425.5], [60, 100]]
+        stops = self.rng.choice(usual)
         return [[stop, strength * (1 - 0.0625 * place)] for place, stop in enumerate(stops)]
 
     # Loads and cases

@@ -120,8 +120,9 @@ def direct(**rows: str) -> str:
 
 def only(text: str) -> Table:
     """The report of the one point of a project."""
-    (point,) = report(HEAD + text)["points"]
-    return point
+    points: list[Table] = report(HEAD + text)["points"]
+    assert len(points) == 1
+    return points[0]
 
 
 def names(point: Table) -> list[str]:

@@ -48,22 +48,50 @@ def state_of(project: Project, rating: Rating, envelope: Envelope) -> State:
     )
 
 
+@dataclass(frozen=True, eq=False, slots=True)
+class Pending:
+    """A change whose project is known and whose margins may still have to be computed."""
+
+    project: Project
+    """The project after it."""
+    text: str
+    """It in a line, for when it is done."""
+    record: Callable[[], None]
+    """Moves the history on."""
+    large: bool
+    """Whether its margins are better computed beside the screen."""
+
+
+def is_patchable(table: MarginTable, project: Project) -> bool:
+    """Whether a later state of a project has the rows, columns and loads of a table, so that only parts are computed."""
+    old = table.project
+    return (
+        len(old.points) == len(project.points)
+        and len(old.cases) == len(project.cases)
+        and old.loads is project.loads
+        and old.categories is project.categories
+        and old.materials is project.materials
+    )
+
+
 class Document:
     """One project being worked on."""
 
-    def __init__(self, project: Project, path: Path | None, *, new: bool = False) -> None:
-        """new: the file does not exist yet, so that leaving would lose the project."""
+    def __init__(self, project: Project, path: Path | None, text: str | None = None) -> None:
+        """text: what the file holds; None: it does not exist yet, so that leaving would lose the project."""
         self.project = project
         self.path = path
+        self._text = text
         self.table: MarginTable = compute(project)
-        self.history = History(saved=None if new else 0)
+        self.history = History(saved=None if text is None else 0)
         self._state: State | None = None
         self._notes: int | None = None
 
     @classmethod
     def open(cls, path: Path) -> Document:
         """The project of a file. Raises store.ProjectError."""
-        return cls(store.load(path), path)
+        found = store.read(path)
+        return cls(found.project, path, found.text)
 
     @property
     def dirty(self) -> bool:
@@ -99,57 +127,59 @@ class Document:
 
     # ---- changing
 
-    def prepared(self, edit: Edit) -> tuple[Project, Step]:
-        """The project after an edit and the step that records it. Raises Refusal; nothing is changed."""
+    def begin(self, edit: Edit) -> Pending:
+        """An edit applied to the project but not yet to the document. Raises Refusal; nothing has changed then."""
         project = edits.apply(self.project, edit)
         step = Step(edit, edits.inverse(self.project, edit), edits.describe(self.project, edit))
-        return project, step
+        return Pending(project, step.text, lambda: self.history.commit(step), self._is_large(project))
 
-    def is_large(self, project: Project) -> bool:
-        """Whether computing the project's margins from here would hold the screen up."""
-        cells = len(project.points) * len(project.checked)
-        return cells > LARGE and not self._alike(project)
-
-    def _alike(self, project: Project) -> bool:
-        old = self.project
-        return (
-            (old.points is project.points or len(old.points) == len(project.points))
-            and len(old.cases) == len(project.cases)
-            and old.loads is project.loads
-            and old.categories is project.categories
-            and old.materials is project.materials
-        )
-
-    def adopt(self, project: Project, table: MarginTable | None = None) -> None:
-        """Make a project the present one; its table is computed here unless one is given."""
-        self.table = compute(project, self.table) if table is None else table
-        self.project = project
-        self._state = self._notes = None
-
-    def commit(self, edit: Edit) -> str:
-        """Apply an edit for good and say it in a line. Raises Refusal; then nothing has changed."""
-        project, step = self.prepared(edit)
-        self.adopt(project)
-        self.history.commit(step)
-        return step.text
-
-    def undo(self) -> str | None:
-        """Take the last edit back and say it; None where there is none."""
+    def begin_undo(self) -> Pending | None:
+        """The last edit taken back, likewise; None where there is none."""
         if not self.history.done:
             return None
         step = self.history.done[-1]
-        self.adopt(edits.apply(self.project, step.inverse))
-        self.history.took_back()
-        return step.text
+        project = edits.apply(self.project, step.inverse)
+        return Pending(project, f"undone: {step.text}", self.history.took_back, self._is_large(project))
 
-    def redo(self) -> str | None:
-        """Make the last undone edit again and say it; None where there is none."""
+    def begin_redo(self) -> Pending | None:
+        """The last edit taken back made again, likewise; None where there is none."""
         if not self.history.undone:
             return None
         step = self.history.undone[-1]
-        self.adopt(edits.apply(self.project, step.edit))
-        self.history.did_again()
-        return step.text
+        project = edits.apply(self.project, step.edit)
+        return Pending(project, f"redone: {step.text}", self.history.did_again, self._is_large(project))
+
+    def finish(self, pending: Pending, table: MarginTable | None = None) -> None:
+        """Make the pending project the present one; its table is computed here unless one is given."""
+        self.table = compute(pending.project, self.table) if table is None else table
+        self.project = pending.project
+        pending.record()
+        self._state = self._notes = None
+
+    def _is_large(self, project: Project) -> bool:
+        """Whether computing the project's margins from here would hold the screen up."""
+        cells = len(project.points) * len(project.checked)
+        return cells > LARGE and not is_patchable(self.table, project)
+
+    def commit(self, edit: Edit) -> str:
+        """Apply an edit for good and say it in a line. Raises Refusal; then nothing has changed."""
+        pending = self.begin(edit)
+        self.finish(pending)
+        return pending.text
+
+    def undo(self) -> str | None:
+        """Take the last edit back and say it; None where there is none."""
+        return self._done(self.begin_undo())
+
+    def redo(self) -> str | None:
+        """Make the last undone edit again and say it; None where there is none."""
+        return self._done(self.begin_redo())
+
+    def _done(self, pending: Pending | None) -> str | None:
+        if pending is None:
+            return None
+        self.finish(pending)
+        return pending.text
 
     # ---- the file
 
@@ -158,8 +188,8 @@ class Document:
         target = path or self.path
         if target is None:
             raise Refusal("this project has no file name yet: save it under one")
-        base = self.path if self.path is not None and self.path.exists() else None
-        store.save_as(self.project, target, base) if path is not None and base else store.save(self.project, target)
+        like = None if target == self.path else self._text
+        self._text = store.save(self.project, target, like)
         self.path = target
         self.history.mark_saved()
         return target
@@ -168,7 +198,7 @@ class Document:
         """Read the file again; edits not saved and the history are gone. Raises store.ProjectError."""
         if self.path is None:
             raise Refusal("this project has no file to read again")
-        self.__init__(store.load(self.path), self.path)  # type: ignore[misc]
-
-
-Computation = Callable[[], MarginTable]
+        found = store.read(self.path)
+        self.project, self._text = found.project, found.text
+        self.table, self.history = compute(found.project), History()
+        self._state = self._notes = None

@@ -62,7 +62,7 @@ def text_of(value: Plain, form: Form) -> str:
 
 
 def _table_text(value: Mapping[str, Plain]) -> str:
-    """ `LC01 = 1, "LC 13" = 0.5`: the inside of an inline table of the file."""
+    """`LC01 = 1, "LC 13" = 0.5`: the inside of an inline table of the file."""
     return ", ".join(f"{_key(key)} = {text_of(item, 'text')}" for key, item in value.items())
 
 

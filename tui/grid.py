@@ -43,24 +43,34 @@ class Sheet(Protocol):
 
     def size(self) -> tuple[int, int]:
         """Rows and columns of the body; asked for often, so it must not count anything."""
+
     def width(self, column: int) -> int:
         """Cells of a column, gap and mark included; at least 3."""
+
     def header(self, column: int) -> Cell:
         """The head of a column."""
+
     def frozen_header(self, room: int) -> Runs:
         """The head of the left block, in all `frozen_width(room)` cells."""
+
     def frozen_width(self, room: int) -> int:
         """Cells of the left block when the whole grid has `room` cells; 0 for none."""
+
     def frozen(self, row: int, room: int) -> Runs:
         """The left block of a row, in all `frozen_width(room)` cells; its first run that is not blank is its name."""
+
     def cells(self, row: int, columns: Sequence[int]) -> list[Cell]:
         """The cells of a row in these columns: one gather for one visible line."""
+
     def footers(self) -> int:
         """How many rows stand under the body."""
+
     def footer(self, index: int, columns: Sequence[int]) -> list[Cell]:
         """The cells of a row under the body."""
+
     def footer_frozen(self, index: int, room: int) -> Runs:
         """The left block of a row under the body."""
+
     def empty(self) -> str:
         """What a sheet without rows or without columns says, in lines of its own; first of all what to press."""
 
@@ -325,8 +335,7 @@ class Grid(ScrollView, can_focus=True, inherit_bindings=False):
 
     def _become(self, place: _Place, repaint: bool = False) -> None:
         """Take a place, as near as the sheet allows: repaint what differs, tell of it, park the terminal's cursor."""
-        before, place = self._place, self._followed(place)
-        self._place = place
+        before, self._place = self._place, (place := self._followed(place))
         scrolled = (before.top, before.first) != (place.top, place.first)
         if repaint or scrolled:
             self.refresh()

@@ -15,9 +15,9 @@ from engine.units import SYSTEMS
 
 from .document import Document
 from .palette import Runs
-from .words import THEORY, governing_case, theory
+from .words import THEORY, governing_case
 
-_LABEL = 11
+_LABEL = 10
 
 
 def cell_lines(document: Document, row: int, column: int, limits: list[int]) -> list[Runs]:
@@ -49,11 +49,11 @@ def _title(document: Document, row: int, column: int) -> Runs:
     point, case = project.points[row], project.cases[table.of_case[column]]
     degrees = float(table.rating.temperature[table.rating.of_point[row], column])
     unit = SYSTEMS[project.settings.units].temperature
-    words = [case.label, case.category, "" if math.isnan(degrees) else f"{number_text(degrees)} {unit}", point.material]
+    words = [case.category, "" if math.isnan(degrees) else f"{number_text(degrees)} {unit}", point.material, case.label]
     return [
         (f" {'Here':<{_LABEL}}", "dim"),
         (f"{point.name} x {case.name}", "governs"),
-        ("   " + "   ".join(word for word in words if word), "plain"),
+        ("   " + "  ".join(word for word in words if word), "plain"),
     ]
 
 
@@ -67,18 +67,19 @@ def _theories(document: Document, row: int, column: int, limit: int) -> list[Run
     margins = table.margins(np.array([row]), np.array([column]), limit)[:, 0, 0]
     verdicts = controls(float(margins[0]), float(margins[1]))
     place = _shear_place(document, row, column)
+    works = [_work(document, row, column, limit, i) for i in range(len(THEORIES))]
     lines: list[Runs] = []
     for i, name in enumerate(THEORIES):
         margin = float(margins[i])
-        after = "controls" if verdicts == name else ("equal" if verdicts == "both" and i == 0 else "")
-        work = _work(document, row, column, limit, i)
+        controlling = "controls" if verdicts == name else ("equal" if verdicts == "both" and i == 0 else "")
+        words = [_said(margin), controlling, place if i else ""]
         role = _role(margin, document.project.settings.thin)
         lines.append(
             [
                 (f" {THEORY[name]:<{_LABEL}}", "dim"),
-                (f"{work:<39} ", "plain"),
-                (f"{margin_text(margin):>6} {_said(margin):<6}", role),
-                (f" {after:<9}{place if i else ''}", "plain"),
+                (f"{works[i]:<{max(map(len, works)) + 1}}", "plain"),
+                (f"{margin_text(margin):>6}  ", role),
+                (", ".join(word for word in words if word), "plain"),
             ]
         )
     return lines
@@ -125,7 +126,9 @@ def point_line(document: Document, row: int) -> Runs:
     if (by[0].case, by[0].limit) == (by[1].case, by[1].limit):
         text = f"both theories name {_cell(document, by[0])}: Tresca {margin_text(by[0].margin)}, von Mises {margin_text(by[1].margin)}"
         return [(label, "dim"), (text, "plain")]
-    parts = [f"{THEORY[n]} names {_cell(document, f)} {margin_text(f.margin)}" for n, f in zip(THEORIES, by, strict=True)]
+    parts = [
+        f"{THEORY[n]} names {_cell(document, f)} {margin_text(f.margin)}" for n, f in zip(THEORIES, by, strict=True)
+    ]
     missing = int(envelope.missing[row])
     lacking = f"; {missing} without data" if missing else ""
     _ = project
@@ -152,13 +155,11 @@ def governs_line(document: Document) -> Runs:
 
 
 def said(tresca: float, von_mises: float) -> str:
-    """ "Tresca fails by 4 %, von Mises passes (-0.04, +0.00)"."""
-    numbers = f"Tresca {margin_text(tresca)}, von Mises {margin_text(von_mises)}"
+    """ "Tresca fails by 4 %, von Mises passes", or both margins where the theories agree on that."""
+    numbers = f"{margin_text(tresca)} by Tresca, {margin_text(von_mises)} by von Mises"
     fails = [name for name, m in zip(THEORIES, (tresca, von_mises), strict=True) if m < -TOLERANCE]
-    if not fails:
-        return f"{numbers}"
-    if len(fails) == 2:
-        return f"both fail; {numbers}"
+    if len(fails) != 1:
+        return numbers
     margin = tresca if fails[0] == "tresca" else von_mises
     other = "von-mises" if fails[0] == "tresca" else "tresca"
-    return f"{theory(fails[0])} fails by {percent_text(margin)}, {theory(other)} passes; {numbers}"  # type: ignore[arg-type]
+    return f"{THEORY[fails[0]]} fails by {percent_text(margin)}, {THEORY[other]} passes"

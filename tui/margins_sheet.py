@@ -7,6 +7,7 @@ from dataclasses import dataclass, replace
 from typing import Literal
 
 import numpy as np
+import numpy.typing as npt
 
 from engine.envelope import VERDICTS, least_accepted, verdict_codes
 from engine.figures import margin_text, margin_texts, stress_text, utilisation_text
@@ -26,12 +27,12 @@ _THEORIES: tuple[Theory, ...] = ("least", "tresca", "von-mises", "difference")
 _LIMITS: tuple[Limit, ...] = ("all", "yield", "ultimate")
 _QUANTITIES: tuple[Quantity, ...] = ("margin", "utilisation", "equivalent")
 _SHOWN_THEORY: dict[Theory, str] = {
-    "least": "the lesser",
+    "least": "worse",
     "tresca": "Tresca",
     "von-mises": "von Mises",
     "difference": "Tresca less von Mises",
 }
-_SHOWN_LIMIT: dict[Limit, str] = {"all": "yield and ultimate", "yield": "yield", "ultimate": "ultimate"}
+_SHOWN_LIMIT: dict[Limit, str] = {"all": "all limits", "yield": "yield", "ultimate": "ultimate"}
 
 
 @dataclass(frozen=True, slots=True)
@@ -68,7 +69,7 @@ class Block:
 
     margins: Array
     """(2, ...) least margins by theory over the shown limits."""
-    verdicts: Array
+    verdicts: npt.NDArray[np.int8]
     """(...) places in VERDICTS."""
 
 
@@ -90,22 +91,28 @@ class MarginsSheet(WorkSheet):
 
     def column_name(self, column: int) -> str:
         project = self.document.project
-        return project.cases[self.document.table.of_case[column]].name
+        return project.cases[int(self.document.table.of_case[column])].name
 
     def empty(self) -> str:
         points, cases = self.size()
         if not points:
-            return "There is no check point yet.\nPress a to add one" + ("" if cases else ", A (shift and a) to add a load case") + "."
+            return (
+                "There is no check point yet.\nPress a to add one"
+                + ("" if cases else ", A (shift and a) to add a load case")
+                + "."
+            )
         return "No load case is checked yet.\nPress A (shift and a) to add one."
 
     def shows(self) -> str:
         show = self.show
-        what = {"margin": "margin", "utilisation": "utilisation", "equivalent": "equivalent stress"}[show.quantity]
+        theory = self._worse() if show.theory == "least" else _SHOWN_THEORY[show.theory]
         if show.quantity == "equivalent":
-            return f"{what}, {_SHOWN_THEORY[show.theory]}, in {self._unit()}"
-        by = "both theories" if show.theory == "least" and self._both() else ""
-        theory = f"the lesser of {by}" if by else (_SHOWN_THEORY[show.theory] if show.theory != "least" else self._accepted())
+            return f"equivalent stress in {self._unit()}: {theory}"
+        what = "margin" if show.quantity == "margin" else "utilisation"
         return f"{what}: {theory}, {_SHOWN_LIMIT[show.limit]}"
+
+    def _worse(self) -> str:
+        return "worse of both theories" if self._both() else self._accepted()
 
     def _both(self) -> bool:
         return self.document.project.settings.accept == "both"
@@ -180,7 +187,7 @@ class MarginsSheet(WorkSheet):
     def _cell(text: str, code: int, governs: bool = False) -> Cell:
         verdict = VERDICTS[code]
         role = VERDICT_ROLES[verdict]
-        return Cell(text, f"{role} governs" if governs else role, MARKS[verdict])
+        return Cell(f"{text} ", f"{role} governs" if governs else role, MARKS[verdict])
 
     def header(self, column: int) -> Cell:
         return Cell(self.column_name(column), "head")
@@ -195,7 +202,7 @@ class MarginsSheet(WorkSheet):
         settings = self.document.project.settings
         with np.errstate(invalid="ignore"):
             least = np.fmin.reduce(block.margins, axis=1)
-        lacking = self.document.table.missing(slice(None), np.array(columns, dtype=np.intp)).any(axis=0)
+        lacking = np.any(self.document.table.missing(slice(None), np.array(columns, dtype=np.intp)), axis=0)
         codes = verdict_codes(least, lacking, settings.accept, settings.thin)
         chosen = self._chosen(least)
         used = self.show.quantity == "utilisation"
@@ -245,7 +252,9 @@ class MarginsSheet(WorkSheet):
             return None
         point, case = self.document.project.points[row], self.column_name(column)
         if point.section:
-            return Opening("", message=f"{point.name} takes its stress from section {point.section}, which is not computed yet")
+            return Opening(
+                "", message=f"{point.name} takes its stress from section {point.section}, which is not computed yet"
+            )
         if point.linear:
             text = f"{point.name} is linear: its stress in {case} is made by loads x stress per unit load; edit the loads here"
             return Opening("loads", row=case, message=text)

@@ -140,7 +140,10 @@ class RecordSheet(WorkSheet):
         text = self.text(row, column) or "not given"
         lines: list[Runs] = [
             [(f" {'Here':<11}", "dim"), (f"{self.row_name(row)}   {self._label(row)}", "governs")],
-            [(f" {field.path[-1]:<11}", "dim"), (f"{text} {self._unit(field) if text != 'not given' else ''}", "plain")],
+            [
+                (f" {field.path[-1]:<11}", "dim"),
+                (f"{text} {self._unit(field) if text != 'not given' else ''}", "plain"),
+            ],
         ]
         if field.hint:
             lines.append([(f" {'entry':<11}", "dim"), (field.hint, "dim")])

@@ -94,7 +94,10 @@ class StressSheet(WorkSheet):
         principals = "  ".join(stress_text(float(value)) for value in criteria.principals(given))
         return [
             [(f" {'principals':<11}", "dim"), (principals, "plain")],
-            [(f" {'equivalent':<11}", "dim"), (f"Tresca {stress_text(tresca)}   von Mises {stress_text(mises)}", "plain")],
+            [
+                (f" {'equivalent':<11}", "dim"),
+                (f"Tresca {stress_text(tresca)}   von Mises {stress_text(mises)}", "plain"),
+            ],
         ]
 
     # ---- working

@@ -9,13 +9,17 @@ from engine.project import Accept, Project
 THEORY: dict[str, str] = {"tresca": "Tresca", "von-mises": "von Mises", "both": "both theories"}
 SHORT_THEORY: dict[str, str] = {"tresca": "Tresca", "von-mises": "Mises", "both": "both"}
 SHORT_LIMIT: dict[str, str] = {"yield": "yield", "ultimate": "ult."}
-ACCEPTS: dict[Accept, str] = {"both": "both theories must pass", "tresca": "Tresca must pass", "von-mises": "von Mises must pass"}
+ACCEPTS: dict[Accept, str] = {
+    "both": "both theories must pass",
+    "tresca": "Tresca must pass",
+    "von-mises": "von Mises must pass",
+}
 VERDICT: dict[Verdict, str] = {
     "clear": "clear",
     "thin": "thin",
     "split": "split",
     "short": "short",
-    "no-data": "without data",
+    "no-data": "no data",
 }
 CAUTION = (
     "A margin is only as good as its loads, its stresses and its material data. "
@@ -39,5 +43,5 @@ def limit_word(place: int) -> Limit:
 
 
 def plural(count: int, one: str, many: str = "") -> str:
-    """"1 edit", "3 edits"."""
+    """ "1 edit", "3 edits"."""
     return f"{count} {one if count == 1 else many or one + 's'}"

@@ -225,6 +225,8 @@ NO_UNITS = [
     "N//mm",
     "N/-mm",
     "N..mm",
+    "°-C",
+    "-N",
     "N mm2",
     "MPa2",
     "N/mm3",

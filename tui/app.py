@@ -1,0 +1,160 @@
+"""The terminal application: opens a project, starts a new one, asks where none is named."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from functools import partial
+from pathlib import Path
+from typing import ClassVar
+
+from rich.text import Text
+from textual import events
+from textual.app import App
+from textual.binding import Binding, BindingType
+from textual.command import DiscoveryHit, Hit, Hits, Provider
+
+from engine.store import ProjectError
+
+from . import state
+from .desk import Desk
+from .dialogs import Page, Question
+from .document import Document
+from .file_actions import error_text
+from .palette import Palette
+from .recent import Recent
+from .starter import Starter
+from .words import CAUTION
+
+
+class DeskCommands(Provider):
+    """The palette of all commands, by a plain name."""
+
+    def _commands(self) -> Iterable[tuple[str, str, str]]:
+        screen = self.screen
+        for binding in type(screen).BINDINGS:
+            if isinstance(binding, Binding):
+                yield binding.description, binding.tooltip, binding.action
+
+    async def discover(self) -> Hits:
+        for name, text, action in self._commands():
+            yield DiscoveryHit(name, partial(self.screen.run_action, action), help=text)
+
+    async def search(self, query: str) -> Hits:
+        matcher = self.matcher(query)
+        for name, text, action in self._commands():
+            score = max(matcher.match(name), matcher.match(text))
+            if score > 0:
+                yield Hit(score, matcher.highlight(name), partial(self.screen.run_action, action), help=text)
+
+
+class HexlipseApp(App[None]):
+    """The program on the screen."""
+
+    TITLE = "Hexlipse"
+    COMMANDS: ClassVar = {DeskCommands}
+    BINDINGS: ClassVar[list[BindingType]] = [
+        Binding("ctrl+q", "leave", "leave", show=False, id="app.leave", tooltip="Leave the program"),
+        Binding("ctrl+c", "nothing", "drop", show=False, id="app.drop", tooltip="Nothing: ctrl+q leaves"),
+    ]
+    CSS = "Screen { background: #121212; color: #d0d0d0; }"
+
+    def __init__(self, path: Path | None = None, palette: Palette | None = None, ascii_only: bool = False) -> None:
+        super().__init__(ansi_color=palette is not None and palette.mode != "colour")
+        self._path = path
+        self._palette = palette or Palette()
+        self._ascii = ascii_only
+        self.animation_level = "none"
+
+    def on_mount(self) -> None:
+        self.app_resume_signal.subscribe(self, lambda _: self.refresh())  # after fg the screen is blank
+        if state.caution_read():
+            self._begin()
+            return
+        text = f"{CAUTION}\n\nHexlipse computes margins against yield and ultimate by Tresca and von Mises from what it is given. It checks neither buckling, fatigue, fracture nor deflection."
+        self.push_screen(Question(text, [("enter", "read", "I have read this")], "leave the program"), self._read)
+
+    def _read(self, answer: str | None) -> None:
+        if not answer:
+            self.exit(return_code=0)
+            return
+        state.mark_caution_read()
+        self._begin()
+
+    def _begin(self) -> None:
+        if self._path is None:
+            self.push_screen(Recent(state.recent(), self._palette), self._chosen)
+        elif self._path.exists():
+            self._open(self._path)
+        else:
+            self._ask_new(self._path)
+
+    def _ask_new(self, path: Path) -> None:
+        if not path.parent.is_dir():
+            self._stop(f"There is no folder {path.parent} to start {path.name} in.")
+            return
+        text = f"There is no file {path}."
+        options = [("n", "new", f"start a new project in {path.name}")]
+        self.push_screen(
+            Question(text, options, "leave the program"), lambda answer: self._new(path if answer else None)
+        )
+
+    def _chosen(self, choice: Path | str | None) -> None:
+        if choice is None:
+            self.exit(return_code=0)
+        elif isinstance(choice, str):
+            self.push_screen(Starter(None, self._palette), self._started)
+        else:
+            self._open(choice)
+
+    def _new(self, path: Path | None) -> None:
+        if path is None:
+            self.exit(return_code=0)
+        else:
+            self.push_screen(Starter(path, self._palette), self._started)
+
+    def _started(self, document: Document | None) -> None:
+        if document is None:
+            self.exit(return_code=0)
+        else:
+            self._show(document)
+
+    def _open(self, path: Path) -> None:
+        try:
+            document = Document.open(path)
+        except ProjectError as error:
+            self.push_screen(Page(error_text(error)), lambda _: self.exit(return_code=2))
+            return
+        state.remember(path)
+        self._show(document)
+
+    def _show(self, document: Document) -> None:
+        self.switch_screen(Desk(document, self._palette, self._ascii)) if len(
+            self.screen_stack
+        ) > 1 else self.push_screen(Desk(document, self._palette, self._ascii))
+
+    def _stop(self, text: str) -> None:
+        self.push_screen(Page(Text(text)), lambda _: self.exit(return_code=2))
+
+    def on_key(self, event: events.Key) -> None:
+        """Every key that no widget took comes here, in the order typed.
+
+        An open entry takes it before any binding sees it. Were the entry a focused widget, keys typed faster than the
+        focus moves would still go to the grid, and "60000" could become "0".
+        """
+        take = getattr(self.screen, "take_key", None)
+        if take is not None and take(event):
+            event.prevent_default()
+            event.stop()
+
+    def on_paste(self, event: events.Paste) -> None:
+        """A paste goes to an open entry, and nowhere else."""
+        take = getattr(self.screen, "take_paste", None)
+        if take is not None and take(event.text):
+            event.stop()
+
+    def action_leave(self) -> None:
+        """Leave; a desk asks first."""
+        self.exit(return_code=0)
+
+    def action_nothing(self) -> None:
+        """Keep the stock key from ending the program."""
