@@ -12,6 +12,7 @@ from engine.table import MarginTable
 
 from .document import Document
 from .grid import Cell
+from .here import said_lines
 from .palette import Runs, cut
 from .sheet import WorkSheet
 
@@ -86,10 +87,10 @@ class CautionsSheet(WorkSheet):
             return []
         found = self.caution(row)
         lines: list[Runs] = [
-            [(f" {'Here':<11}", "dim"), (f"{self.point_name(row)}: {found.name}", "governs")],
-            [(f" {'why':<11}", "dim"), (found.text, "plain")],
+            [(f" {'Here':<10} ", "dim"), (f"{self.point_name(row)}: {found.name}", "governs")],
+            *said_lines("why", found.text),
         ]
         for given in self.document.project.acknowledgements:
             if (given.point, given.caution) == (self.point_name(row), found.name):
-                lines.append([(f" {'taken on':<11}", "dim"), (f"by {given.by}: {given.reason}", "plain")])
+                lines.append([(f" {'taken on':<10} ", "dim"), (f"by {given.by}: {given.reason}", "plain")])
         return lines

@@ -17,12 +17,12 @@ from engine.margins import MarginTable
 from engine.units import UnitError
 
 from .dialogs import Page
-from .document import Document, Pending
+from .document import Document, Pending, State
 from .entry_line import EntryLine, Request
 from .file_actions import FileActions
 from .grid import Grid
 from .help import help_text
-from .here import governs_line
+from .here import governs_line, said_lines
 from .margins_sheet import MarginsSheet
 from .palette import Palette, Runs, plain_ascii, visible
 from .part_actions import PartActions
@@ -68,7 +68,7 @@ class Desk(PartActions, FileActions, TakeOnActions, Screen[None]):
         _key("enter", "enter", "edit or open", "Edit the cell, or open what stands behind it"),
         _key("g", "worst", "governing cell", "To the governing cell of the project"),
         _key("G", "worst_of_row", "governing of row", "To the governing cell of this row's point"),
-        _key("n", "trouble(1)", "next trouble", "Next cell in trouble: short, then split, thin, without data"),
+        _key("n", "trouble(1)", "next trouble", "Next cell in trouble: short, then split, thin, no data"),
         _key("N", "trouble(-1)", "trouble before", "The cell in trouble before"),
         _key("t", "show('theory')", "theory", "Which theory the cells show"),
         _key("l", "show('limit')", "limit", "Which limit the cells show"),
@@ -105,6 +105,8 @@ class Desk(PartActions, FileActions, TakeOnActions, Screen[None]):
         self._places: dict[str, tuple[int, int]] = {}
         self.sheet: WorkSheet = self._sheet("margins")
         self._trouble = Trouble()
+        self._ahead: State | None = None
+        self._not_taken = ""
         self._busy = False
 
     def compose(self) -> ComposeResult:
@@ -154,6 +156,8 @@ class Desk(PartActions, FileActions, TakeOnActions, Screen[None]):
         row, column = self.grid.cursor
         rows, columns = self.sheet.size()
         lines = self.sheet.here(row, column) if row < rows and column < columns else []
+        if self._not_taken and self.line.typing:
+            lines = said_lines("Not taken", self._not_taken, self.size.width)
         lines = [*lines[:4], *([[("", "plain")]] * (4 - len(lines[:4]))), governs_line(self.document)]
         self.query_one("#here", Static).update(Text("\n").join(self._text(runs) for runs in lines))
         self.query_one("#rule", Static).update(
@@ -171,10 +175,11 @@ class Desk(PartActions, FileActions, TakeOnActions, Screen[None]):
         return line
 
     def _tell(self) -> None:
-        document = self.document
-        self.query_one(SummaryLines).tell(
-            document.state, document.dirty, document.notes, self.sheet.shows(), self._where()
-        )
+        document, ahead = self.document, self._ahead
+        typing = ahead is not None and self.line.typing
+        shows = "while typing: what the margins would become" if typing else self.sheet.shows()
+        state = ahead if ahead is not None and typing else document.state
+        self.query_one(SummaryLines).tell(state, document.dirty, document.notes, shows, self._where(), typing)
 
     def _where(self) -> list[str]:
         """Where in the grid one is and where what governs lies off the screen, longest wording first."""
@@ -360,23 +365,26 @@ class Desk(PartActions, FileActions, TakeOnActions, Screen[None]):
         def change(text: str) -> None:
             self._look_ahead(sheet, row, column, text)
 
-        self.line.ask(Request(sheet.prompt(row, column), initial, submit, change, self._entry_over))
+        prompt = sheet.prompt(row, column)
+        self.line.ask(Request(prompt, initial, submit, change, self._show_refusal, self._entry_over))
+
+    def _show_refusal(self, why: str) -> None:
+        self._not_taken = why
+        self.refresh_texts()
 
     def _look_ahead(self, sheet: WorkSheet, row: int, column: int, text: str) -> None:
-        """While typing, the summary shows what the margins would become."""
+        """While typing, the summary shows what the margins would become; an entry not yet readable shows what is."""
         try:
             edit = sheet.edit(row, column, text)
-            state = self.document.preview(edit) if edit is not None else self.document.state
+            self._ahead = self.document.preview(edit) if edit is not None else self.document.state
         except SHOWN_REFUSALS:
-            state = None
-        document = self.document
-        if state is None:
-            self._tell()
-            return
-        shows = "while typing: what the margins would become"
-        self.query_one(SummaryLines).tell(state, document.dirty, document.notes, shows, self._where(), typing=True)
+            self._ahead = None
+        if self._not_taken:
+            self._show_refusal("")
+        self._tell()
 
     def _entry_over(self, taken: bool) -> None:
+        self._ahead, self._not_taken = None, ""
         self.refresh_texts()
         if not taken:
             self.say("dropped; nothing was changed")

@@ -39,6 +39,8 @@ class Request:
     """Called on Enter; a refusal is shown and the text stays."""
     change: Change = lambda _: None
     """Called at each change of the text."""
+    refused: Callable[[str], None] = lambda _: None
+    """Called with why the entry was not taken, where there is more room to say it."""
     closed: Callable[[bool], None] = lambda _: None
     """Called when the entry is over; whether it was taken."""
 
@@ -121,6 +123,7 @@ class EntryLine(Static):
         why = request.submit(self._editor.text)
         if why is not None:
             self._why = why
+            request.refused(why)
             self._draw()
         elif self._request is request:
             self._close(request, taken=True)

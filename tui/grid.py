@@ -83,9 +83,6 @@ class Span(NamedTuple):
     left: int
     right: int
 
-    def holds(self, row: int, column: int) -> bool:
-        return self.top <= row <= self.bottom and self.left <= column <= self.right
-
 
 @dataclass(frozen=True, slots=True)
 class _Place:
@@ -268,14 +265,9 @@ class Grid(ScrollView, can_focus=True, inherit_bindings=False):
         self._become(replace(self._place, anchor=anchor), repaint=True)
 
     def go(self, row: int, column: int, extend: bool = False) -> None:
-        """Move the cursor, as near as the sheet allows, and scroll no more than it takes to see it.
-
-        `extend`: select from where the selection began, or from where the cursor was.
-        """
+        """Move the cursor, as near as the sheet allows, and scroll to see it; `extend` the selection or begin one."""
         anchor = (self._place.anchor or self._place.cursor) if extend else None
         self._become(replace(self._place, cursor=(row, column), anchor=anchor))
-
-    # Where things lie
 
     def _body(self) -> int:
         """Where the body begins."""
@@ -292,15 +284,14 @@ class Grid(ScrollView, can_focus=True, inherit_bindings=False):
         """The visible part: the first column as far as there is room, the others only whole."""
         height, footers = self._heights()
         rows, columns = self.sheet.size() if all(self.sheet.size()) else (0, 0)
-        x = body = self._body()
-        seen: dict[int, range] = {}
+        x, seen = self._body(), dict[int, range]()
         for column in range(self.first, columns):
             end = x + self.sheet.width(column)
             if end > self.size.width and seen:
                 break
             seen[column] = range(x, min(end, self.size.width))
             x = end
-        return _View(body, seen, range(self.top, max(self.top, min(rows, self.top + height))), footers)
+        return _View(self._body(), seen, range(self.top, max(self.top, min(rows, self.top + height))), footers)
 
     def _leftmost(self, column: int, floor: int) -> int:
         """The least first column, not below `floor`, from which `column` is wholly visible."""
@@ -372,8 +363,6 @@ class Grid(ScrollView, can_focus=True, inherit_bindings=False):
         anchor = None if carry else self._place.anchor
         self._become(_Place((row, column), anchor, top, self.first))
 
-    # Keys, mouse, events
-
     def action_move(self, rows: int, columns: int, extend: bool = False) -> None:
         row, column = self.cursor
         self.go(row + rows, column + columns, extend)
@@ -431,8 +420,8 @@ class Grid(ScrollView, can_focus=True, inherit_bindings=False):
         return runs
 
     def _header_runs(self, view: _View) -> Runs:
-        here = self.cursor[1]
-        cells = (_over(self.sheet.header(column), "here" if column == here else "") for column in view.columns)
+        here = {self.cursor[1]: "here"}
+        cells = (_over(self.sheet.header(column), here.get(column, "")) for column in view.columns)
         return self._line(view, self.sheet.frozen_header(self.size.width), cells, name=True)
 
     def _body_runs(self, row: int, view: _View) -> Runs:
@@ -446,11 +435,12 @@ class Grid(ScrollView, can_focus=True, inherit_bindings=False):
         """The role that cursor and selection lay over a cell."""
         if (row, column) == self.cursor:
             return "cursor"
-        return "selected" if self.span.holds(row, column) else ""
+        top, bottom, left, right = self.span
+        return "selected" if top <= row <= bottom and left <= column <= right else ""
 
     def _footer_runs(self, index: int, view: _View) -> Runs:
-        left = self.sheet.footer_frozen(index, self.size.width)
-        return self._line(view, left, self.sheet.footer(index, list(view.columns)))
+        cells = self.sheet.footer(index, list(view.columns))
+        return self._line(view, self.sheet.footer_frozen(index, self.size.width), cells)
 
     def _empty_runs(self, y: int) -> Runs:
         """A line of what an empty sheet says: at the left, half way down."""

@@ -27,7 +27,11 @@ _SPELLED = {
 
 def spelled(keys: str) -> str:
     """Keys of a binding as a person reads them."""
-    return " ".join(_SPELLED.get(key, key) for key in keys.split(","))
+    return " ".join(_SPELLED.get(key, key.upper() if _is_function(key) else key) for key in keys.split(","))
+
+
+def _is_function(key: str) -> bool:
+    return key.startswith("f") and key[1:].isdigit()
 
 
 def _lines(bindings: Iterable[BindingType]) -> list[Text]:
@@ -35,7 +39,7 @@ def _lines(bindings: Iterable[BindingType]) -> list[Text]:
     for binding in bindings:
         if isinstance(binding, Binding):
             lines.append(
-                Text.assemble((f"  {spelled(binding.key):<14}", "bold"), binding.tooltip or binding.description)
+                Text.assemble((f"  {spelled(binding.key):<12}", "bold"), binding.tooltip or binding.description)
             )
     return lines
 
@@ -47,7 +51,7 @@ def help_text(desk: Desk) -> Text:
     lines += [
         Text(""),
         Text("In an entry", "bold"),
-        *(Text.assemble((f"  {key:<14}", "bold"), words) for key, words in KEYS),
+        *(Text.assemble((f"  {key:<16}", "bold"), words) for key, words in KEYS),
     ]
     lines += [
         Text("  a digit, sign, point or bracket starts an entry in a cell of numbers"),

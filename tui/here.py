@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+import textwrap
 
 import numpy as np
 
@@ -120,7 +121,7 @@ def point_line(document: Document, row: int) -> Runs:
     """What governs the point under each theory; said where the theories name different cases."""
     envelope, project = document.table.envelope, document.project
     by = [envelope.by_theory(row, name) for name in THEORIES]
-    label = f" {'This point':<{_LABEL}}"
+    label = f" {'Point':<{_LABEL}}"
     if not by[0].known:
         return [(label, "dim"), ("nothing is known of it yet", "nodata")]
     if (by[0].case, by[0].limit) == (by[1].case, by[1].limit):
@@ -156,10 +157,17 @@ def governs_line(document: Document) -> Runs:
 
 def said(tresca: float, von_mises: float) -> str:
     """ "Tresca fails by 4 %, von Mises passes", or both margins where the theories agree on that."""
-    numbers = f"{margin_text(tresca)} by Tresca, {margin_text(von_mises)} by von Mises"
+    numbers = f"{margin_text(tresca)} Tresca, {margin_text(von_mises)} von Mises"
     fails = [name for name, m in zip(THEORIES, (tresca, von_mises), strict=True) if m < -TOLERANCE]
     if len(fails) != 1:
         return numbers
     margin = tresca if fails[0] == "tresca" else von_mises
     other = "von-mises" if fails[0] == "tresca" else "tresca"
     return f"{THEORY[fails[0]]} fails by {percent_text(margin)}, {THEORY[other]} passes"
+
+
+def said_lines(label: str, text: str, width: int = 80) -> list[Runs]:
+    """A longer text under a label, wrapped."""
+    lines = textwrap.wrap(text, max(width - _LABEL - 4, 20)) or [""]
+    heads = [label, *[""] * (len(lines) - 1)]
+    return [[(f" {head:<{_LABEL}} ", "dim"), (line, "plain")] for head, line in zip(heads, lines, strict=True)]

@@ -148,7 +148,7 @@ class LoadsSheet(WorkSheet):
         case, field = self._case(row), self._field(column)
         words = [case.label, case.category, "" if case.check else "not checked: an ingredient of combinations"]
         title: Runs = [
-            (f" {'Here':<11}", "dim"),
+            (f" {'Here':<10} ", "dim"),
             (f"{case.name} {self.column_name(column)}", "governs"),
             ("   " + "   ".join(word for word in words if word), "plain"),
         ]
@@ -156,18 +156,23 @@ class LoadsSheet(WorkSheet):
 
     def _field_lines(self, case: Case, field: Field) -> list[Runs]:
         text = text_of(plain_of("case", case, field.path), field.form) or "not given"
-        return [[(f" {field.path[0]:<11}", "dim"), (text, "plain")], [(f" {'entry':<11}", "dim"), (field.hint, "dim")]]
+        return [
+            [(f" {field.path[0]:<10} ", "dim"), (text, "plain")],
+            [(f" {'entry':<10} ", "dim"), (field.hint, "dim")],
+        ]
 
     def _load_lines(self, row: int, column: int) -> list[Runs]:
         case, load = self._case(row), self._loads[column]
         unit = load.unit or "(no unit: a multiplier)"
         own = case.loads.get(load.name)
         lines: list[Runs] = [
-            [(f" {'load':<11}", "dim"), (f"{load.label or load.name}   {unit}   {load.sense}", "plain")],
-            [(f" {'magnitude':<11}", "dim"), (self._sum_text(case, column, own), "plain")],
+            [(f" {'load':<10} ", "dim"), (f"{load.label or load.name}   {unit}   {load.sense}", "plain")],
+            [(f" {'magnitude':<10} ", "dim"), (self._sum_text(case, column, own), "plain")],
         ]
         felt = sum(load.name in point.per_load for point in self.document.project.points)
-        lines.append([(f" {'felt by':<11}", "dim"), (f"{felt} of {len(self.document.project.points)} points", "plain")])
+        lines.append(
+            [(f" {'felt by':<10} ", "dim"), (f"{felt} of {len(self.document.project.points)} points", "plain")]
+        )
         return lines
 
     def _sum_text(self, case: Case, column: int, own: float | None) -> str:

@@ -139,14 +139,14 @@ class RecordSheet(WorkSheet):
         field = self.fields[column]
         text = self.text(row, column) or "not given"
         lines: list[Runs] = [
-            [(f" {'Here':<11}", "dim"), (f"{self.row_name(row)}   {self._label(row)}", "governs")],
+            [(f" {'Here':<10} ", "dim"), (f"{self.row_name(row)}   {self._label(row)}", "governs")],
             [
-                (f" {field.path[-1]:<11}", "dim"),
+                (f" {field.path[-1]:<10} ", "dim"),
                 (f"{text} {self._unit(field) if text != 'not given' else ''}", "plain"),
             ],
         ]
         if field.hint:
-            lines.append([(f" {'entry':<11}", "dim"), (field.hint, "dim")])
+            lines.append([(f" {'entry':<10} ", "dim"), (field.hint, "dim")])
         return lines
 
     def _label(self, row: int) -> str:
@@ -235,8 +235,8 @@ class SettingsSheet(WorkSheet):
 
     def here(self, row: int, column: int) -> list[Runs]:
         return [
-            [(f" {'Here':<11}", "dim"), (SETTINGS_FIELDS[row].head, "governs")],
-            [(f" {'entry':<11}", "dim"), (SETTINGS_FIELDS[row].hint, "dim")],
+            [(f" {'Here':<10} ", "dim"), (SETTINGS_FIELDS[row].head, "governs")],
+            [(f" {'entry':<10} ", "dim"), (SETTINGS_FIELDS[row].hint, "dim")],
         ]
 
     def numeric(self, row: int, column: int) -> bool:

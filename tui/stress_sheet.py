@@ -52,7 +52,10 @@ class StressSheet(WorkSheet):
         return rows, 6 if rows else 0
 
     def width(self, column: int) -> int:
-        return 11
+        return 10
+
+    def frozen_width(self, room: int) -> int:
+        return min(24, room - 61)
 
     def row_name(self, row: int) -> str:
         return (self.document.project.cases if self.of == "stress" else self.document.project.loads)[row].name
@@ -83,19 +86,19 @@ class StressSheet(WorkSheet):
     def here(self, row: int, column: int) -> list[Runs]:
         name = self.row_name(row)
         given = self._rows.get(name)
-        title: Runs = [(f" {'Here':<11}", "dim"), (f"{self.point_name} {name} {self.column_name(column)}", "governs")]
+        title: Runs = [(f" {'Here':<10} ", "dim"), (f"{self.point_name} {name} {self.column_name(column)}", "governs")]
         if given is None:
             text = "no row yet: an entry starts one, its other components zero"
-            return [title, [(f" {'row':<11}", "dim"), (text, "nodata")]]
+            return [title, [(f" {'row':<10} ", "dim"), (text, "nodata")]]
         return [title, *self._state_lines(given)]
 
     def _state_lines(self, given: Array) -> list[Runs]:
         tresca, mises = (float(value) for value in criteria.equivalents(given))
         principals = "  ".join(stress_text(float(value)) for value in criteria.principals(given))
         return [
-            [(f" {'principals':<11}", "dim"), (principals, "plain")],
+            [(f" {'principals':<10} ", "dim"), (principals, "plain")],
             [
-                (f" {'equivalent':<11}", "dim"),
+                (f" {'equivalent':<10} ", "dim"),
                 (f"Tresca {stress_text(tresca)}   von Mises {stress_text(mises)}", "plain"),
             ],
         ]

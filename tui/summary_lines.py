@@ -77,9 +77,11 @@ class SummaryLines(Static):
     @staticmethod
     def _cautions(state: State, notes: int) -> list[str]:
         """How many cautions stand, longest wording first."""
-        blocks = plural(state.standing, "caution blocks", "cautions block") if state.standing else "no caution blocks"
-        short = f"{state.standing} blocks" if state.standing == 1 else f"{state.standing} block"
         noted = plural(notes, "note")
+        if not state.standing:
+            return [f"no caution blocks, {noted}", f"no caution, {noted}", noted]
+        blocks = plural(state.standing, "caution blocks", "cautions block")
+        short = f"{state.standing} {'blocks' if state.standing == 1 else 'block'}"
         return [f"{blocks}, {noted}", f"cautions: {short}, {noted}", f"{short}, {noted}", short]
 
     def _third(self, shows: str, where: Sequence[str], width: int) -> Text:

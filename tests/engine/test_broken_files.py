@@ -95,11 +95,11 @@ AGAIN = '[[case]]\n@name = "LC01"\ncategory = "normal"\n\n[[section]]'
 
 BROKEN = [
     # what TOML does not take
-    ("yield = 345.0", "yield = 345.0@ MPa", "material[1].yield", 'found "MPa" after the value', "expected a new line", ""),
+    ("yield = 345.0", "yield = 345.0@ MPa", "material[1].yield", 'found "MPa" after', "expected a new line", ""),
     ("thin = 0.10", "thin = 0@,10", "project.thin", 'found ",10" after the value', "expected a new line", ""),
     ('"Bracket"', '"Bracket@', "project.title", "found the end of the line", "expected its closing quote", ""),
     ('"tested"\n', '"""tested\n@', "acknowledge[1].reason", "found the end of the", "closing quotes", ""),
-    ("0.1, 0, 0]", "0.1, 0, 0\n@wind = [1, 2]", "point[2].per-load.haul", 'found "wind" in a list', "expected , or ]", ""),
+    ("0.1, 0, 0]", "0.1, 0, 0\n@wind = [1, 2]", "point[2].per-load.haul", 'found "wind"', "expected , or ]", ""),
     ("elongation = 0.2", "elongation@ 0.2", "material[1].elongation", 'found "0.2"', "expected = and", ""),
     ("elongation = 0.2", "elongation = @", "material[1].elongation", "found the end", "expected a number", ""),
     ('accept = "both"', "accept = @both", "project.accept", 'found "both"', '"text" in quotes', ""),
