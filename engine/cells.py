@@ -88,6 +88,15 @@ def margins_of(values: Array, rating: Rating, rows: Places, columns: Places | sl
     return found
 
 
+def few_margins(values: Array, rating: Rating, rows: Places, columns: Places, limits: int) -> Array:
+    """(limits, 2, rows, columns) margins of a few cells, the first so many of LIMITS at once: fewer, smaller steps."""
+    allowable = rating.allowable[:limits][..., columns].take(rating.of_point[rows], axis=2)
+    with np.errstate(divide="ignore", invalid="ignore"):
+        found: Array = allowable / (values * rating.factor[:limits, None, rows, None])
+    found -= 1.0
+    return found
+
+
 def missing_of(values: Array, rating: Rating, rows: Places, columns: Places | slice) -> Flags:
     """(rows, columns): cells of which an asked limit lacks its stress or its strength."""
     found: Flags = np.isnan(values[1]) & rating.asked[:, columns].any(axis=0)

@@ -42,7 +42,13 @@ memory page, or all work rows would compete for the same places in the cache."""
 LEAST, MOST = 1e-45, 1e45
 """Von Mises stresses between which the sixth powers in D neither vanish nor overflow."""
 
-NUMERATOR = (
+
+def _constants(*values: float) -> tuple[Floats, ...]:
+    """The values as arrays without axes; a Python number costs half as much again as the NumPy call it is given to."""
+    return tuple(np.array(value) for value in values)
+
+
+NUMERATOR = _constants(
     1.572624328025048,
     8.07027898811952,
     13.793540907778594,
@@ -50,7 +56,7 @@ NUMERATOR = (
     1.8193199781182536,
     0.04367001126549273,
 )
-DENOMINATOR = (
+DENOMINATOR = _constants(
     3.1452486560504633,
     18.499494468201302,
     38.31645401603888,
@@ -60,6 +66,8 @@ DENOMINATOR = (
 )
 """Ascending coefficients of p and q: 1 + y p(y)/q(y) is the largest root w of w^3 - w = y for y in [0, 2/sqrt(27)],
 within 9e-17 of its size; a minimax fit made at 60 digits."""
+
+HALF, THREE, FOUR = _constants(0.5, 3.0, 4.0)
 
 IN_PLANE = 1e-9
 """Relative difference within which the in-plane shear is the greatest shear there is."""
@@ -315,16 +323,16 @@ def _plane_form(parts: Iterable[Floats], tresca: Floats, von_mises: Floats) -> N
     room = _WORK.room(tresca.size)
     c, R, RR = room.K, room.y, room.term
     add(xx, yy, c)
-    multiply(c, 0.5, c)
+    multiply(c, HALF, c)
     subtract(xx, yy, R)
-    multiply(R, 0.5, R)
+    multiply(R, HALF, R)
     multiply(R, R, R)
     multiply(xy, xy, RR)
     add(R, RR, RR)
     sqrt(RR, R)
     _plane_tresca(c, R, tresca)
     multiply(c, c, c)
-    multiply(RR, 3.0, RR)
+    multiply(RR, THREE, RR)
     add(c, RR, c)
     sqrt(c, von_mises)
 
@@ -375,7 +383,7 @@ def _cyclic(factors: _Triple, out: _Triple) -> None:
 def _three_j2(dd: Sequence[Floats], ss: Sequence[Floats], K: Floats) -> None:
     add(ss[0], ss[1], K)
     add(K, ss[2], K)
-    multiply(K, 3.0, K)
+    multiply(K, THREE, K)
     for row in dd:
         subtract(K, row, K)
 
@@ -394,10 +402,10 @@ def _discriminant(room: _Room, s: _Triple, D: Floats) -> None:
     total = f.rows[0]
     add(total, f.rows[1], total)
     add(total, f.rows[2], total)
-    multiply(total, 4.0, total)
+    multiply(total, FOUR, total)
     for row in plus.rows:
         add(total, row, total)
-    multiply(total, 4.0, total)
+    multiply(total, FOUR, total)
     add(D, total, D)
 
 

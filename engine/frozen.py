@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator, Mapping
+from collections.abc import ItemsView, Iterable, Iterator, KeysView, Mapping, ValuesView
 from typing import Generic, TypeVar
 
 import numpy as np
@@ -31,6 +31,17 @@ class FrozenMap(Mapping[str, V], Generic[V]):
 
     def __contains__(self, key: object) -> bool:
         return key in self._items
+
+    # Mapping would look every key up anew; a project of many cases asks for these often.
+
+    def keys(self) -> KeysView[str]:
+        return self._items.keys()
+
+    def values(self) -> ValuesView[V]:
+        return self._items.values()
+
+    def items(self) -> ItemsView[str, V]:
+        return self._items.items()
 
     def __eq__(self, other: object) -> bool:
         return isinstance(other, FrozenMap) and self._items == other._items

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
 
 import numpy as np
 import numpy.typing as npt
@@ -39,20 +39,14 @@ class Influence:
         self.linear = np.array([point.linear for point in points], dtype=bool)
         self.undefined = np.array([bool(point.section) for point in points], dtype=bool)
         self.rowed = np.array([len(point.stress) > 0 for point in points], dtype=bool) | ~self.linear
-        for row, point in enumerate(points):
-            if point.linear:
-                self._fill(row, point, place, uncomputed)
-
-    def _fill(self, row: int, point: Point, place: dict[str, int], uncomputed: npt.NDArray[np.bool_]) -> None:
-        named = [place[name] for name in point.per_load.names]
-        self.per_load[:, row, named] = point.per_load.array.T
-        felt = np.zeros(len(place), dtype=bool) if point.not_felt == "rest" else np.ones(len(place), dtype=bool)
-        if point.not_felt != "rest":
-            felt[[place[name] for name in point.not_felt]] = False
-            self.unknown[row] = felt
-        felt[named] = True
-        self.unknown[row, named] = False
-        self.unknown[row] |= felt & uncomputed
+        for rows, named, felt in _alike(points, place):
+            self.per_load[:, rows[:, None], named] = np.stack([points[row].per_load.array for row in rows]).transpose(
+                2, 0, 1
+            )
+            self.unknown[rows] = felt & uncomputed
+            if points[rows[0]].not_felt != "rest":
+                self.unknown[rows] |= felt
+                self.unknown[rows[:, None], named] = uncomputed[named]
 
     def stress(self, rows: slice | Places, sets: LoadSets, cases: Places) -> Array:
         """Stress of a block of cells.
@@ -151,6 +145,25 @@ class Influence:
         self.linear[rows] = other.linear
         self.undefined[rows] = other.undefined
         self.rowed[rows] = other.rowed
+
+
+def _alike(points: Sequence[Point], place: dict[str, int]) -> Iterator[tuple[Places, Places, npt.NDArray[np.bool_]]]:
+    """Linear points with the same loads named and not felt, together.
+
+    Gives their rows, the places of the loads that they name, and (loads,) which loads they feel or may feel.
+    """
+    groups: dict[tuple[object, object], list[int]] = {}
+    for row, point in enumerate(points):
+        if point.linear:
+            groups.setdefault((point.per_load.names, point.not_felt), []).append(row)
+    for rows in groups.values():
+        first = points[rows[0]]
+        named = np.array([place[name] for name in first.per_load.names], dtype=np.intp)
+        felt = np.full(len(place), first.not_felt != "rest")
+        if first.not_felt != "rest":
+            felt[[place[name] for name in first.not_felt]] = False
+        felt[named] = True
+        yield np.array(rows, dtype=np.intp), named, felt
 
 
 def why_missing(point: Point, case: Case, project_loads: Sequence[Load], sets: LoadSets) -> str:

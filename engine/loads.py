@@ -134,9 +134,28 @@ class LoadSets:
         self._resolve(self.order)
 
     def _resolve(self, places: Iterable[int]) -> None:
+        plain: dict[tuple[str, ...], list[int]] = {}
+        combined = []
+        for place in places:
+            case = self.cases[place]
+            if case.combine:
+                combined.append(place)
+            else:
+                plain.setdefault(tuple(case.loads), []).append(place)
+        for names, alike in plain.items():
+            self._fill(names, alike)
         with np.errstate(over="ignore", invalid="ignore"):
-            for place in places:
+            for place in combined:
                 self.magnitudes[place], self.sizes[place] = self._resolved(self.cases[place])
+
+    def _fill(self, names: tuple[str, ...], places: list[int]) -> None:
+        """Magnitudes of cases that combine nothing and name the same loads, in one go."""
+        self.magnitudes[places] = 0.0
+        if names:
+            columns = [self.columns[name] for name in names]
+            values = [list(self.cases[place].loads.values()) for place in places]
+            self.magnitudes[np.array(places)[:, None], columns] = values
+        self.sizes[places] = np.abs(self.magnitudes[places])
 
     def updated(self, cases: Sequence[Case], changed: Sequence[int]) -> tuple[LoadSets, list[int]]:
         """The sets after some cases, at the places given, became others of the same names.
@@ -189,12 +208,10 @@ class LoadSets:
         return [place for place in self.order if place in found]
 
     def _resolved(self, case: Case) -> tuple[Array, Array]:
-        """Magnitudes and sizes of one case from its own loads and its already resolved ingredients."""
+        """Magnitudes and sizes of a combination from its own loads and its already resolved ingredients."""
         total = np.zeros(len(self.columns))
         for name, value in case.loads.items():
             total[self.columns[name]] = value
-        if not case.combine:
-            return total, np.abs(total)
         size = np.abs(total)
         for name, factor in case.combine.items():
             total = total + factor * self.magnitudes[self.place[name]]

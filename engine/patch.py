@@ -12,11 +12,10 @@ from engine.cells import (
     Flags,
     Governed,
     equivalents_of,
+    few_margins,
     govern,
-    group_least,
     hydrostatic_flags,
     least_of,
-    margins_of,
     missing_of,
 )
 from engine.envelope import TOLERANCE, Envelope, Places
@@ -99,10 +98,11 @@ class Patch:
         whole[self._rows] = whole[self._rated] = True
         steady = np.flatnonzero(~whole)
         self._steady = steady
-        self._groups = np.unique(columns // GROUP)
+        self._groups = np.array(sorted({int(column) // GROUP for column in columns}), dtype=np.intp)
         if not len(columns):
             return
-        new = equivalents_of(table.influence, self.sets, self.rating, steady, columns, table.of_case, steady)
+        local = slice(None) if len(steady) == points else steady
+        new = equivalents_of(table.influence, self.sets, self.rating, steady, columns, table.of_case, local)
         self._column_values, self._column_hydrostatic = new.values, new.hydrostatic
         before = table.values[:, steady[:, None], columns]
         self._count(steady, before, new.values, table.hydrostatic[steady[:, None], columns], new.hydrostatic)
@@ -116,27 +116,23 @@ class Patch:
         envelope.tension[rows] += tense_after.sum(axis=1) - tense.sum(axis=1)
 
     def _govern_columns(self, steady: Places, before: Array) -> None:
-        """Least margins of the touched groups; only points whose least the columns had or now have are governed again."""
-        table = self._base
-        least = table.group_least[:, :, steady][:, :, :, self._groups]
-        place = np.searchsorted(self._groups, self._columns // GROUP)
-        stale = np.zeros(len(steady), dtype=bool)
-        touched = np.zeros(len(steady), dtype=bool)
-        bound = table.envelope.least[:, steady] + CLOSE
+        """Least margins of the touched groups; points whose least the columns had or now have are governed again."""
+        table, columns = self._base, self._columns
+        limits = 1 + max(*table.rating.limits, *self.rating.limits)
+        least = table.group_least[:, :, steady[:, None], self._groups]
+        place = np.searchsorted(self._groups, columns // GROUP)
+        old = few_margins(before, table.rating, steady, columns, limits)
+        new = few_margins(self._column_values, self.rating, steady, columns, limits)
+        bound = table.envelope.least[:, steady, None]
         with np.errstate(invalid="ignore"):
-            for limit in range(2):
-                old = margins_of(before, table.rating, steady, self._columns, limit)
-                new = margins_of(self._column_values, self.rating, steady, self._columns, limit)
-                stale |= (old <= least[limit][:, :, place] + CLOSE).any(axis=(0, 2))
-                touched |= (old <= bound[:, :, None]).any(axis=(0, 2)) | (new <= bound[:, :, None]).any(axis=(0, 2))
-                touched |= (np.isnan(bound)[:, :, None] & ~np.isnan(new)).any(axis=(0, 2))
-                for i, group in enumerate(place):
-                    np.fmin(least[limit][:, :, group], new[:, :, i], out=least[limit][:, :, group])
-        again = np.flatnonzero(stale)
+            stale = np.flatnonzero((old <= least[:limits, :, :, place] + CLOSE).any(axis=(0, 1, 3)))
+            touched = (old <= bound + CLOSE) | (new <= bound + CLOSE) | (np.isnan(bound) & ~np.isnan(new))
+        for i, group in enumerate(place):
+            np.fmin(least[:limits, :, :, group], new[..., i], out=least[:limits, :, :, group])
         for i, group in enumerate(self._groups):
-            least[:, :, again, i] = self._group_again(steady[again], again, int(group))
+            least[:, :, stale, i] = self._group_again(steady[stale], stale, int(group))
         self._group_least = least
-        rows = np.flatnonzero(touched)
+        rows = np.flatnonzero(touched.any(axis=(0, 1, 3)))
         self._govern(steady[rows], self._all_groups(steady[rows], rows), self._patched)
 
     def _group_again(self, rows: Places, local: Places, group: int) -> Array:
@@ -147,9 +143,9 @@ class Patch:
         for i, column in enumerate(self._columns):
             if column // GROUP == group:
                 values[:, :, column - columns[0]] = self._column_values[:, local, i]
+        limits = 1 + self.rating.limits[-1]
         found = np.full((2, 2, len(rows)), np.nan)
-        for limit in self.rating.limits:
-            found[limit] = group_least(margins_of(values, self.rating, rows, columns, limit))[..., 0]
+        found[:limits] = np.fmin.reduce(few_margins(values, self.rating, rows, columns, limits), axis=-1)
         return found
 
     def _all_groups(self, rows: Places, local: Places) -> Array:

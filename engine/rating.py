@@ -54,15 +54,16 @@ class Rating:
         self.allowable = self.strength / self.required[:, :, None, :]
 
     def _set_required(self, project: Project, cases: Sequence[Case]) -> None:
-        categories = {category.name: category for category in project.categories}
-        self.required = np.full((2, 2, len(cases)), np.nan)
-        self.asked = np.zeros((2, len(cases)), dtype=bool)
-        for column, case in enumerate(cases):
+        found = np.full((len(project.categories), 2, 2), np.nan)
+        for place, category in enumerate(project.categories):
             for i, limit in enumerate(LIMITS):
-                factors = categories[case.category].required(limit)
+                factors = category.required(limit)
                 if factors is not None:
-                    self.required[i, :, column] = factors.tresca, factors.von_mises
-                    self.asked[i, column] = True
+                    found[place, i] = factors.tresca, factors.von_mises
+        place_of = {category.name: i for i, category in enumerate(project.categories)}
+        of_case = np.array([place_of[case.category] for case in cases], dtype=np.intp)
+        self.required = np.ascontiguousarray(found[of_case].transpose(1, 2, 0))
+        self.asked = ~np.isnan(self.required[:, 0])
 
     def _set_points(self, points: Sequence[Point]) -> None:
         classes = self.classes
@@ -74,8 +75,8 @@ class Rating:
 
     @property
     def limits(self) -> list[int]:
-        """Places in LIMITS of those that any case asks for."""
-        return [i for i in range(len(LIMITS)) if self.asked[i].any()]
+        """Places in LIMITS of those that any case asks for; yield always is."""
+        return [0, 1] if self.asked[1].any() else [0]
 
     def of_row(self, row: int) -> Array:
         """(2, 2, cases): allowable stress at a point, point factor included."""

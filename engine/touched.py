@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from operator import is_not
 from typing import Any
 
 import numpy as np
@@ -40,6 +41,8 @@ def between(table: MarginTable, new: Project) -> Touched | None:
     if not _comparable(old, new):
         return None
     cases = _differing(old.cases, new.cases)
+    if any(old.cases[i].check != new.cases[i].check for i in cases):
+        return None
     rows = _differing(old.points, new.points)
     sets, columns = _columns(table, new, cases)
     rating = _rating(table, new, cases, rows)
@@ -56,16 +59,14 @@ def between(table: MarginTable, new: Project) -> Touched | None:
 
 def _differing(old: Sequence[Any], new: Sequence[Any]) -> list[int]:
     """Places at which two equally long sequences do not hold the same object."""
-    return [] if old is new else [i for i, (a, b) in enumerate(zip(old, new, strict=True)) if a is not b]
+    return [] if old is new else [i for i, other in enumerate(map(is_not, old, new)) if other]
 
 
 def _comparable(old: Project, new: Project) -> bool:
     """Whether rows, columns and loads of two states stand for the same things, place by place."""
     if len(old.points) != len(new.points) or len(old.cases) != len(new.cases):
         return False
-    if old.loads is not new.loads and [(x.name, x.sense) for x in old.loads] != [(x.name, x.sense) for x in new.loads]:
-        return False
-    return old.cases is new.cases or [c.check for c in old.cases] == [c.check for c in new.cases]
+    return old.loads is new.loads or [(x.name, x.sense) for x in old.loads] == [(x.name, x.sense) for x in new.loads]
 
 
 def _columns(table: MarginTable, new: Project, cases: list[int]) -> tuple[LoadSets, Places]:
@@ -80,7 +81,11 @@ def _columns(table: MarginTable, new: Project, cases: list[int]) -> tuple[LoadSe
         affected = [sets.place[name] for name in sets.reached([new.cases[i].name for i in cases])]
     else:
         sets, affected = table.sets.updated(new.cases, cases)
-    return sets, np.flatnonzero(np.isin(table.of_case, affected))
+    places = np.sort(np.array(affected, dtype=np.intp))
+    columns = np.searchsorted(table.of_case, places)
+    inside = columns < len(table.of_case)
+    columns, places = columns[inside], places[inside]
+    return sets, columns[table.of_case[columns] == places]
 
 
 def _same_stress(old: Case, new: Case) -> bool:

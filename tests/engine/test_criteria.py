@@ -232,8 +232,8 @@ def test_streaming_refuses_shapes_that_do_not_fit(shapes: tuple[tuple[int, ...],
 
 @pytest.mark.parametrize("name", ["random", "plane"])
 def test_streaming_pays_for_no_allocation(name: str) -> None:
-    stress = family(name, 2 * BLOCK)
-    results = np.empty((2, 2 * BLOCK))
+    stress = family(name, 2 * BLOCK - 100)  # two blocks, not of one size
+    results = np.empty((2, 2 * BLOCK - 100))
     equivalents_into(stress, *results)  # makes the work rows of this thread
     tracemalloc.start()
     try:

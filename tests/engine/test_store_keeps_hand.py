@@ -45,6 +45,7 @@ def _lines(before: str, after: str) -> tuple[list[str], list[str]]:
     return [line[2:] for line in diff if line[0] == "-"], [line[2:] for line in diff if line[0] == "+"]
 
 
+FACTOR = "factor = 1.15                            # or { yield = 1.15, ultimate = 1.0 }"
 ROW = [120.0, 0.0, 0.0, 36.0, 0.0, 0.0]
 
 
@@ -71,15 +72,27 @@ ROW = [120.0, 0.0, 0.0, 36.0, 0.0, 0.0]
         (BRACKET, Set("case", "two", ("loads", "Wärme"), 3.0), ['"Wärme" = 2.5'], ['"Wärme" = 3.0']),
         # a load that was not named: after the others, dotted as they are
         (BRACKET, Set("case", "LC 1", ("loads", "Wärme"), 1.0), [], ['loads."Wärme" = 1.0']),
-        # a load that was not named, in an inline table
+        # an inline table with a member more, one with a member less, and one whose last member goes
         (
             WINCH,
-            Set("case", "LC01", ("combine", "dead"), None),
-            ["combine = { dead = 1.1 }"],
-            [],
+            Set("point", "P01", ("kt",), {"Mz": 1.7, "T": 1.4, "N": 2.0}),
+            ["kt = { Mz = 1.7, T = 1.4 }"],
+            ["kt = { Mz = 1.7, T = 1.4, N = 2.0 }"],
         ),
+        (
+            WINCH,
+            Set("case", "LC01", ("loads", "wind"), None),
+            ["loads = { haul = 12000.0, wind = 800.0 } # in N"],
+            ["loads = { haul = 12000.0 } # in N"],
+        ),
+        (WINCH, Set("case", "LC01", ("combine", "dead"), None), ["combine = { dead = 1.1 }"], []),
         # one element of a row over several lines with comments
-        (BRACKET, Set("point", "P2", ("stress", "LC 1"), ROW), ["  35.5, 0, 0 ]    # shear"], ["  36.0, 0, 0 ]    # shear"]),
+        (
+            BRACKET,
+            Set("point", "P2", ("stress", "LC 1"), ROW),
+            ["  35.5, 0, 0 ]    # shear"],
+            ["  36.0, 0, 0 ]    # shear"],
+        ),
         # the file's own order of components: one element of the row
         (
             WINCH,
@@ -108,7 +121,7 @@ ROW = [120.0, 0.0, 0.0, 36.0, 0.0, 0.0]
         # a key that comes, indented as its neighbours
         (BRACKET, Set("category", "normal", ("label",), "N"), [], ['\tlabel = "N"']),
         # a key that goes, with the comment behind it
-        (WINCH, Set("point", "P01", ("factor",), None), [WINCH.splitlines()[74]], []),
+        (WINCH, Set("point", "P01", ("factor",), None), [FACTOR], []),
         # one number for both theories stays one
         (BRACKET, Set("category", "normal", ("yield",), 1.6), ["\tyield = 1.5"], ["\tyield = 1.6"]),
         # a table of one limit stays one where the other keeps its default
@@ -186,7 +199,11 @@ ROW = [120.0, 0.0, 0.0, 36.0, 0.0, 0.0]
         (
             BRACKET,
             Rename("load", "side", "quer, 1"),
-            ['  { name = "side" , label = "S" },', 'loads . "side" = 8e2   # eight hundred', 'not-felt = [ "side",   # no'],
+            [
+                '  { name = "side" , label = "S" },',
+                'loads . "side" = 8e2   # eight hundred',
+                'not-felt = [ "side",   # no',
+            ],
             [
                 '  { name = "quer, 1" , label = "S" },',
                 'loads . "quer, 1" = 8e2   # eight hundred',
@@ -199,7 +216,7 @@ ROW = [120.0, 0.0, 0.0, 36.0, 0.0, 0.0]
         (
             BRACKET,
             Remove("point", "P2"),
-            BRACKET[BRACKET.index('name = "P2"') : BRACKET.index('name = "P3"')].split("\n")[:-1] + [""],
+            BRACKET[BRACKET.index('name = "P2"') : BRACKET.index('name = "P3"')].split("\n"),
             [],
         ),
         # the last entry of its kind and of the file
@@ -236,12 +253,11 @@ def test_where_new_things_stand() -> None:
 
 
 def test_the_first_entry_of_a_kind_comes_below_those_of_earlier_kinds() -> None:
-    start, end = WINCH.index("[[section]]"), WINCH.index("[[acknowledge]]")
-    text = WINCH[:start] + WINCH[end:].replace("P02", "P9")
-    point = '[[point]]\nname = "P9"\nmaterial = "S355 16-40"\n'
-    project = parse(text[: text.index("[[acknowledge]]")])
-    new = saved_text(apply(project, Insert("point", 0, {"name": "P9", "material": "S355 16-40"})), text)
-    assert f"combine = {{ dead = 1.1 }}\n\n{point}" in new
+    project = SCATTERED[SCATTERED.index("[project]") : SCATTERED.index("[point.per-load]")]
+    text = f"format = 1\n{project}[[category]]\nname = 'c'\nyield = 1\n"
+    case = "[[case]]\nname = 'one'\ncategory = 'c'\n"
+    new = _after(f"{text}{case}", Insert("load", 0, {"name": "F"}))
+    assert new == f"{text}[[load]]\nname = \"F\"\n{case}"
 
 
 @pytest.mark.parametrize("name", list(FILES))
@@ -288,9 +304,8 @@ def test_newlines_the_byte_order_mark_and_the_end_of_the_file_stay(name: str) ->
 
 
 def test_a_swap_of_names_keeps_what_each_says() -> None:
-    text = _after(
-        WINCH, Rename("point", "P01", "tmp"), Rename("point", "P02", "P01"), Rename("point", "tmp", "P02")
-    )
+    swap = [Rename("point", "P01", "tmp"), Rename("point", "P02", "P01"), Rename("point", "tmp", "P02")]
+    text = _after(WINCH, *swap)
     assert parse(text).names("point") == ("P02", "P01", "P03")
 
 
@@ -310,7 +325,7 @@ def test_another_order_of_components_rewrites_the_rows() -> None:
     assert "# as the solver exports them" in text
 
 
-def test_the_key_of_a_file_that_is_another_project_is_not_kept() -> None:
+def test_a_file_of_another_project_becomes_this_one() -> None:
     text = saved_text(parse(WINCH), BRACKET)
     assert parse(text).same(parse(WINCH))
 

@@ -237,7 +237,7 @@ async def test_head_and_name_of_the_cursors_cell_stand_out() -> None:
     [
         ("日本語", "日本語  "),  # two cells each
         ("日本語の軸", "日本語… "),  # a wide character that straddles the edge gives way to a blank
-        ("Welle é", "Welle é "),  # one cell
+        ("Welle\u00a0é", "Welle é "),  # one cell each, the blank that does not break too
         ("Welle e\u0301", "Welle é "),  # the same, written as letter and mark
         ("a\x1b[31mb", "a␛[31mb "),  # a colour sequence
         ("a\nb\tc\x7f", "a␊b␉c␡  "),  # line end, tab, delete
