@@ -174,13 +174,15 @@ def _text(table: MarginTable, row: int, name: str) -> str:
     place = int(rating.of_point[row])
     match name:
         case "elongation":
-            return f"elongation {number_text(material.elongation or 0.0)} is below {DUCTILE_ELONGATION}: the theories are for ductile metals"
+            least = f"elongation {number_text(material.elongation or 0.0)} is below {DUCTILE_ELONGATION}"
+            return f"{least}: the theories are for ductile metals"
         case "hydrostatic-tension":
             return _tension_text(table, row)
         case "temperature":
             column, case = _first(table, _outside(material, rating, place))
             degrees = number_text(float(rating.temperature[place, column]))
-            return f"{degrees} in {case} is covered by no table and no range of {material.name}; the plain values were used"
+            uncovered = f"{degrees} in {case} is covered by no table and no range of {material.name}"
+            return f"{uncovered}; the plain values were used"
         case "factor-below-one":
             return "a required factor or the point factor is below 1"
         case "no-source-strength":

@@ -25,7 +25,8 @@ depend, to the last bit, on the states beside it: every step is one correctly ro
 """
 
 import threading
-from collections.abc import Callable, Iterable, Sequence
+from collections import deque
+from collections.abc import Callable, Iterable, Iterator, Sequence
 from concurrent.futures import ThreadPoolExecutor
 from typing import Any, NamedTuple
 
@@ -93,42 +94,26 @@ def equivalents(stress: ArrayLike, *, threads: int = 1) -> tuple[Floats, Floats]
     states = state_array(stress)
     flat = states.reshape(6, -1)
     tresca, von_mises = np.empty((2, flat.shape[1]))
-    _spread(flat, tresca, von_mises, threads)
+    if threads == 1 or flat.size == 0:
+        equivalents_into(flat, tresca, von_mises)
+    else:
+        _in_threads(threads, flat, tresca, von_mises)
     shape = states.shape[1:]
     return tresca.reshape(shape)[()], von_mises.reshape(shape)[()]
-
-
-def _spread(stress: Floats, tresca: Floats, von_mises: Floats, threads: int) -> None:
-    n = stress.shape[1]
-    step = min(BLOCK, -(-n // threads))
-    if threads == 1 or step == 0:
-        equivalents_into(stress, tresca, von_mises)
-        return
-
-    def work(start: int) -> None:
-        part = slice(start, start + step)
-        equivalents_into(stress[:, part], tresca[part], von_mises[part])
-
-    with ThreadPoolExecutor(threads) as pool:
-        for _ in pool.map(work, range(0, n, step)):
-            pass
 
 
 def equivalents_into(stress: Floats, tresca: Floats, von_mises: Floats) -> None:
     """Write both equivalent stresses of `stress`, float64 of shape (6, n), into two arrays of shape (n,).
 
-    Runs in the calling thread, in work rows that the thread keeps, so a caller that streams blocks of states of up
-    to BLOCK pays for no allocation. ValueError where shapes do not fit each other.
+    Runs in the calling thread, in work rows that the thread keeps, so a caller that streams its states pays for no
+    allocation. ValueError where shapes do not fit each other.
     """
     if stress.ndim != 2 or stress.shape[0] != 6:
         raise ValueError(f"stress has shape {stress.shape}, expected (6, n)")
     n = stress.shape[1]
     if tresca.shape != (n,) or von_mises.shape != (n,):
         raise ValueError(f"results have shapes {tresca.shape} and {von_mises.shape}, expected ({n},)")
-    with np.errstate(all="ignore"):  # what overflows or is no number is found and repaired after
-        for start in range(0, n, BLOCK):
-            part = slice(start, start + BLOCK)
-            _block(stress[:, part], tresca[part], von_mises[part])
+    _blocks(deque(range(0, n, BLOCK)), BLOCK, stress, tresca, von_mises)
 
 
 def principals(stress: ArrayLike) -> Floats:
@@ -219,6 +204,31 @@ def _aligned(n: int) -> Floats:
 
 
 _WORK = _Work()
+
+
+def _in_threads(threads: int, stress: Floats, tresca: Floats, von_mises: Floats) -> None:
+    n = stress.shape[1]
+    step = min(BLOCK, -(-n // threads))
+    starts = deque(range(0, n, step))
+    with ThreadPoolExecutor(threads) as pool:
+        for done in [pool.submit(_blocks, starts, step, stress, tresca, von_mises) for _ in range(threads)]:
+            done.result()
+
+
+def _blocks(starts: deque[int], step: int, stress: Floats, tresca: Floats, von_mises: Floats) -> None:
+    """The blocks of `step` states at `starts` until none is left; several threads may take from the same `starts`."""
+    with np.errstate(all="ignore"):  # what overflows or is no number is found and repaired after
+        for start in _taken(starts):
+            part = slice(start, start + step)
+            _block(stress[:, part], tresca[part], von_mises[part])
+
+
+def _taken(starts: deque[int]) -> Iterator[int]:
+    while True:
+        try:
+            yield starts.popleft()
+        except IndexError:  # asking first would leave time for another thread to take the last
+            return
 
 
 def _block(stress: Floats, tresca: Floats, von_mises: Floats) -> None:

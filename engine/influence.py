@@ -68,7 +68,7 @@ class Influence:
         return block
 
     def trace(self, rows: slice | Places, sets: LoadSets, cases: Places) -> Array:
-        """(rows, cases): sum of the normal stresses, for less work than the stress; not to be read where that is NaN."""
+        """(rows, cases): sum of the normal stresses, for less work; not to be read where the stress is NaN."""
         magnitudes = sets.magnitudes[cases]
         with np.errstate(over="ignore", invalid="ignore"):
             total: Array = self.per_load[:3, rows].sum(axis=0) @ magnitudes.T

@@ -112,7 +112,7 @@ def _of_place(point: Point, names: Names) -> Iterator[Fault]:
         if rows and point.axes is None:
             yield Fault(
                 (),
-                "has a section and rows of its own, expected axes: the x and y directions of its rows in the section's axes",
+                "has a section and rows of its own, expected axes: directions x and y of its rows on the section",
             )
         if point.at is None:
             yield Fault((), "has a section, expected at = [y, z], its place on it")

@@ -8,6 +8,7 @@ import unicodedata
 from collections.abc import Callable, Iterable, Mapping
 from dataclasses import dataclass
 from datetime import date, time
+from itertools import pairwise
 from typing import Any
 
 import numpy as np
@@ -190,7 +191,7 @@ def _each(items: Iterable[tuple[Any, Plain]], item: Reader) -> dict[Any, Any]:
 
 def ascending(value: tuple[tuple[float, ...], ...]) -> tuple[tuple[float, ...], ...]:
     """The rows of a temperature table, refused where the temperatures do not rise strictly."""
-    for place, (before, after) in enumerate(zip(value, value[1:], strict=False), 1):
+    for place, (before, after) in enumerate(pairwise(value), 1):
         if not after[0] > before[0]:
             message = f"found temperature {after[0]:g} after {before[0]:g}, expected strictly ascending temperatures"
             raise Unreadable(Fault((place,), message))

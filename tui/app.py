@@ -25,6 +25,13 @@ from .recent import Recent
 from .starter import Starter
 from .words import CAUTION
 
+FIRST_WORDS = (
+    f"{CAUTION}\n\n"
+    "Hexlipse computes margins against yield and ultimate by Tresca and von Mises from what it is given. "
+    "It checks neither buckling, fatigue, fracture nor deflection."
+)
+"""What the first start says."""
+
 
 class DeskCommands(Provider):
     """The palette of all commands, by a plain name."""
@@ -70,8 +77,8 @@ class HexlipseApp(App[None]):
         if state.caution_read():
             self._begin()
             return
-        text = f"{CAUTION}\n\nHexlipse computes margins against yield and ultimate by Tresca and von Mises from what it is given. It checks neither buckling, fatigue, fracture nor deflection."
-        self.push_screen(Question(text, [("enter", "read", "I have read this")], "leave the program"), self._read)
+        options = [("enter", "read", "I have read this")]
+        self.push_screen(Question(FIRST_WORDS, options, "leave the program"), self._read)
 
     def _read(self, answer: str | None) -> None:
         if not answer:

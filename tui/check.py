@@ -101,9 +101,8 @@ def _figure(found: dict[str, Any]) -> str:
 def _governing_words(found: dict[str, Any]) -> Text:
     if found["case"] is None:
         return Text("Nothing governs: no margin is known.")
-    return Text(
-        f"Governs: {visible(found['point'])} in {visible(found['case'])}, {found['limit']}, {theory(found['theory'])}: {_figure(found)}"
-    )
+    where = f"{visible(found['point'])} in {visible(found['case'])}, {found['limit']}"
+    return Text(f"Governs: {where}, {theory(found['theory'])}: {_figure(found)}")
 
 
 def _plain_table(lines: bool) -> Table:

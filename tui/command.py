@@ -16,16 +16,15 @@ from .words import CAUTION
 
 USAGE = 2
 """Exit status for input that cannot be used."""
+STATUSES = "Exit status: 0 passes and is complete, 1 fails or is not complete, 2 the input cannot be used."
 
 
 def one_place() -> str | None:
-    """Why the two packages do not belong together, or None: a stray `engine` of another program must not compute here."""
-    here, there = Path(tui.__file__ or "").resolve().parent.parent, Path(engine.__file__ or "").resolve().parent.parent
-    return (
-        None
-        if here == there
-        else f"the packages tui ({here}) and engine ({there}) come from different places; install hexlipse anew"
-    )
+    """Why the two packages do not belong together, or None: a stray `engine` of another program must not compute."""
+    here, there = (Path(package.__file__ or "").resolve().parent.parent for package in (tui, engine))
+    if here == there:
+        return None
+    return f"the packages tui ({here}) and engine ({there}) come from different places; install hexlipse anew"
 
 
 def _version() -> str:
@@ -39,7 +38,7 @@ def _check_parser() -> argparse.ArgumentParser:
     parser = argparse.ArgumentParser(
         prog="hexlipse check",
         description="Print the margin summary of a project file.",
-        epilog=f"Exit status: 0 passes and is complete, 1 fails or is not complete, 2 the input cannot be used. {CAUTION}",
+        epilog=f"{STATUSES} {CAUTION}",
     )
     parser.add_argument("file", metavar="FILE", help="project file (TOML)")
     parser.add_argument("--json", action="store_true", help="print one JSON object")
@@ -50,14 +49,14 @@ def _check_parser() -> argparse.ArgumentParser:
 def _screen_parser() -> argparse.ArgumentParser:
     parser = argparse.ArgumentParser(
         prog="hexlipse",
-        description="Margins of safety of ductile metal parts against yield, by Tresca and von Mises: check points x load cases.",
+        description="Margins of safety of ductile metal parts by Tresca and von Mises: check points x load cases.",
         epilog=f"hexlipse check FILE prints the margin summary (see hexlipse check --help). {CAUTION}",
     )
     parser.add_argument(
         "file",
         metavar="FILE",
         nargs="?",
-        help="project file to open; one that does not exist is offered as a new project",
+        help="project file; one that does not exist is offered as a new one",
     )
     parser.add_argument("--ascii", action="store_true", help="draw with ASCII characters only")
     parser.add_argument("--no-mouse", action="store_true", help="leave the mouse to the terminal")

@@ -24,7 +24,8 @@ class Question(ModalScreen[str]):
 
     DEFAULT_CSS = """
     Question { align: center middle; }
-    Question > Vertical { width: 72; max-width: 96%; height: auto; max-height: 90%; border: round $foreground; padding: 0 1; }
+    Question > Vertical { width: 72; max-width: 96%; height: auto; max-height: 90%; padding: 0 1; }
+    Question > Vertical { border: round $foreground; }
     Question Static { width: 1fr; height: auto; }
     """
     BINDINGS: ClassVar[list[BindingType]] = [
@@ -43,6 +44,8 @@ class Question(ModalScreen[str]):
             yield Static(Text("\n").join(lines), markup=False)
 
     def on_key(self, event: events.Key) -> None:
+        if not self.is_current:
+            return  # a second key typed before this box was gone: it must not close what stands below
         for key, answer, _ in self._options:
             if event.key == key or (event.character or "") == key:
                 event.stop()
@@ -59,7 +62,8 @@ class Page(ModalScreen[None]):
 
     DEFAULT_CSS = """
     Page { align: center middle; }
-    Page > VerticalScroll { width: 78; max-width: 98%; height: auto; max-height: 96%; border: round $foreground; padding: 0 1; }
+    Page > VerticalScroll { width: 78; max-width: 98%; height: auto; max-height: 96%; padding: 0 1; }
+    Page > VerticalScroll { border: round $foreground; }
     Page Static { width: 1fr; height: auto; }
     """
     BINDINGS: ClassVar[list[BindingType]] = [

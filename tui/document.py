@@ -63,7 +63,7 @@ class Pending:
 
 
 def is_patchable(table: MarginTable, project: Project) -> bool:
-    """Whether a later state of a project has the rows, columns and loads of a table, so that only parts are computed."""
+    """Whether a later state of a project has the rows, columns and loads of a table, so that parts suffice."""
     old = table.project
     return (
         len(old.points) == len(project.points)

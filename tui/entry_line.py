@@ -150,7 +150,7 @@ class EntryLine(Static):
         self.update(line)
 
     def _entry(self, width: int) -> Text:
-        """Label, what was typed with the cursor in it, and why it was refused; a long text shows its part at the cursor."""
+        """Label, what was typed with the cursor in it, why it was refused; of a long text the part at the cursor."""
         assert self._request is not None
         label = f" {visible(self._request.label)}: "
         why = f"  {visible(self._why)}" if self._why else ""

@@ -119,21 +119,19 @@ def _shear_place(document: Document, row: int, column: int) -> str:
 
 def point_line(document: Document, row: int) -> Runs:
     """What governs the point under each theory; said where the theories name different cases."""
-    envelope, project = document.table.envelope, document.project
+    envelope = document.table.envelope
     by = [envelope.by_theory(row, name) for name in THEORIES]
     label = f" {'Point':<{_LABEL}}"
     if not by[0].known:
         return [(label, "dim"), ("nothing is known of it yet", "nodata")]
-    if (by[0].case, by[0].limit) == (by[1].case, by[1].limit):
-        text = f"both theories name {_cell(document, by[0])}: Tresca {margin_text(by[0].margin)}, von Mises {margin_text(by[1].margin)}"
-        return [(label, "dim"), (text, "plain")]
-    parts = [
-        f"{THEORY[n]} names {_cell(document, f)} {margin_text(f.margin)}" for n, f in zip(THEORIES, by, strict=True)
-    ]
+    margins = [margin_text(found.margin) for found in by]
     missing = int(envelope.missing[row])
     lacking = f"; {missing} without data" if missing else ""
-    _ = project
-    return [(label, "dim"), (", ".join(parts) + lacking, "governs")]
+    if (by[0].case, by[0].limit) == (by[1].case, by[1].limit):
+        text = f"both theories name {_cell(document, by[0])}: {margins[0]} Tresca, {margins[1]} von Mises"
+        return [(label, "dim"), (text + lacking, "plain")]
+    text = f"Tresca names {_cell(document, by[0])} {margins[0]}, von Mises {_cell(document, by[1])} {margins[1]}"
+    return [(label, "dim"), (text + lacking, "governs")]
 
 
 def _cell(document: Document, found: Governing) -> str:

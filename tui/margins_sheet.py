@@ -256,7 +256,9 @@ class MarginsSheet(WorkSheet):
                 "", message=f"{point.name} takes its stress from section {point.section}, which is not computed yet"
             )
         if point.linear:
-            text = f"{point.name} is linear: its stress in {case} is made by loads x stress per unit load; edit the loads here"
+            text = (
+                f"{point.name} is linear: loads x stress per unit load make its stress; edit the loads of {case} here"
+            )
             return Opening("loads", row=case, message=text)
         text = f"{point.name} has its stress given directly; edit the row of {case} here"
         return Opening("stress", row=case, subject=point.name, message=text)

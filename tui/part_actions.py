@@ -205,7 +205,7 @@ class PartActions:
         listed = "\n".join(f"  {user}" for user in users[:8]) + (
             f"\n  and {len(users) - 8} more" if len(users) > 8 else ""
         )
-        text = f"{kind} {name} is referred to by:\n{listed}\nDeleting it takes those references away too. Undo brings all back."
+        text = f"{kind} {name} is referred to by:\n{listed}\nDeleting it takes those away too. Undo brings all back."
         options = [("x", "delete", f"delete {name} and these references")]
         self.app.push_screen(Question(text, options), lambda answer: self._commit_or_refuse(edit) if answer else None)
 

@@ -37,11 +37,11 @@ class Recent(Screen["Path | str | None"]):
         self._paths = tuple(paths)
 
     def compose(self) -> ComposeResult:
-        head = Text.assemble(
-            ("Hexlipse", "bold"), "   margins of safety by Tresca and von Mises\n\n", ("  n ", "bold"), "  start a new project\n",
-            ("  o ", "bold"), "  open a file by its name\n", ("  q ", "bold"), "  leave\n\n",
-            "Recent projects: arrows and Enter" if self._paths else "No project was opened here before.",
-        )  # fmt: skip
+        head = Text.assemble(("Hexlipse", "bold"), "   margins of safety by Tresca and von Mises\n")
+        for key, words in (("n", "start a new project"), ("o", "open a file by its name"), ("q", "leave")):
+            head.append_text(Text.assemble((f"\n  {key} ", "bold"), f"  {words}"))
+        head.append("\n\n")
+        head.append("Recent projects: arrows and Enter" if self._paths else "No project was opened here before.")
         yield Static(head, markup=False)
         options = [
             Option(Text(f"{visible(path.name):<30} {visible(str(path.parent))}"), id=str(i))

@@ -186,7 +186,7 @@ class RecordSheet(WorkSheet):
 
 
 def _whole(path: tuple[str, ...], value: Any, old: Any, kind: str, part: Any) -> tuple[tuple[str, ...], Any]:
-    """Path and value of an edit of one of a pair of factors: a first one is taken for both, a removed one removes both."""
+    """Path and value of an edit of one of two factors: a first one is taken for both, a removed one removes both."""
     if len(path) == 1:
         return path, value
     if value is None:

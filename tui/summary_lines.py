@@ -99,7 +99,8 @@ class SummaryLines(Static):
         if not found.known:
             return "nothing known"
         point = state.project.points[found.point].name
-        return f"{margin_text(found.margin)} {visible(point)[:14]} {governing_case(state.project, found)} {LIMITS[found.limit]}"
+        where = f"{visible(point)[:14]} {governing_case(state.project, found)} {LIMITS[found.limit]}"
+        return f"{margin_text(found.margin)} {where}"
 
     def _spread(self, left: Text, right: Text, width: int, middle: Text | None = None) -> Text:
         """Left, middle and right of one line; the right gives way where there is no room."""

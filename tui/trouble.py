@@ -1,4 +1,4 @@
-"""The cells in trouble, worst kind first: short, then split, thin, without data; each kind in the order of the sheet."""
+"""The cells in trouble, worst kind first: short, split, thin, without data; each in the order of the sheet."""
 
 from __future__ import annotations
 

@@ -144,5 +144,7 @@ def rows() -> Iterator[Row]:
         ("a material", _edited(project, lambda i: Set("material", "metal 1", ("yield",), 250.0 + i)), "over 5"),
     ]
     for what, taken, goal in runs:
-        yield Row(f"again after a change of {what}", duration(taken), f"all {duration(whole)}", full / median(taken), goal)
+        yield Row(
+            f"again after a change of {what}", duration(taken), f"all {duration(whole)}", full / median(taken), goal
+        )
     yield Row("peak memory, bytes a cell", f"{_peak_bytes_per_cell(project):.1f}", "", None, "at most 50")

@@ -253,7 +253,7 @@ def _compared(node: Node, value: Any, text: str) -> int:
     return 1
 
 
-@settings(max_examples=100, deadline=None)
+@settings(max_examples=60, deadline=None)
 @given(documents())
 def test_every_value_of_any_document_is_found(text: str) -> None:
     document = tomllib.loads(text.removeprefix(BOM))

@@ -79,7 +79,7 @@ def test_rows_stand_in_the_order_of_components_of_the_file() -> None:
     assert stress.tolist() == [0.0, 120.0, 0.0, 35.0, 0.0, 0.0]
 
 
-@settings(max_examples=50, deadline=None)
+@settings(max_examples=30, deadline=None)
 @given(projects())
 def test_any_project_reads_as_it_was_written(project: Project) -> None:
     text = render(project)
