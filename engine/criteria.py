@@ -36,7 +36,7 @@ from numpy.typing import ArrayLike, NDArray
 
 from .stress import Floats, state_array, tensor
 
-BLOCK = 32_840
+BLOCK = 40_008
 """States worked on at a time: enough to hide the cost of a NumPy call, few enough for the cache. Not a multiple of a
 memory page, or all work rows would compete for the same places in the cache."""
 

@@ -34,6 +34,11 @@ class Touched:
     rating: Rating
     """Strengths and factors of the new state."""
 
+    def cells(self, shape: tuple[int, int]) -> int:
+        """About how many cells are read or computed again in a table of (points, cases)."""
+        points, cases = shape
+        return (len(self.rows) + len(self.rated)) * cases + len(self.columns) * points
+
 
 def between(table: MarginTable, new: Project) -> Touched | None:
     """What to compute to get from a table to a project; None where everything is."""

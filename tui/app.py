@@ -63,7 +63,10 @@ class HexlipseApp(App[None]):
         Binding("ctrl+q", "leave", "leave", show=False, id="app.leave", tooltip="Leave the program"),
         Binding("ctrl+c", "nothing", "drop", show=False, id="app.drop", tooltip="Nothing: ctrl+q leaves"),
     ]
-    CSS = "Screen { background: #121212; color: #d0d0d0; }"
+    CSS = """
+    Screen { background: #121212; color: #d0d0d0; }
+    .-plain-ascii Question > Vertical, .-plain-ascii Page > VerticalScroll { border: ascii $foreground; }
+    """
 
     def __init__(self, path: Path | None = None, palette: Palette | None = None, ascii_only: bool = False) -> None:
         super().__init__(ansi_color=palette is not None and palette.mode != "colour")
@@ -71,6 +74,7 @@ class HexlipseApp(App[None]):
         self._palette = palette or Palette()
         self._ascii = ascii_only
         self.animation_level = "none"
+        self.set_class(ascii_only, "-plain-ascii")
 
     def on_mount(self) -> None:
         self.app_resume_signal.subscribe(self, lambda _: self.refresh())  # after fg the screen is blank

@@ -13,7 +13,8 @@ from textual.widgets import Static
 
 from engine.edits import Edit, Refusal
 from engine.entry import EntryError
-from engine.margins import MarginTable
+from engine.patch import Patch
+from engine.table import MarginTable
 from engine.units import UnitError
 
 from .dialogs import Page
@@ -30,6 +31,7 @@ from .sheet import Axis, WorkSheet
 from .sheets import ORDER, make_sheet
 from .summary_lines import SummaryLines
 from .take_on import TakeOnActions
+from .texts import fitted
 from .trouble import Trouble
 
 HINTS = (
@@ -110,7 +112,7 @@ class Desk(PartActions, FileActions, TakeOnActions, Screen[None]):
         self._busy = False
 
     def compose(self) -> ComposeResult:
-        yield SummaryLines(self.palette)
+        yield SummaryLines(self.palette, self._ascii)
         yield Grid(self.sheet, palette=self.palette, ascii=self._ascii)
         yield Static("", id="rule", markup=False)
         yield Static("", id="here", markup=False)
@@ -143,6 +145,8 @@ class Desk(PartActions, FileActions, TakeOnActions, Screen[None]):
 
     def refresh_all(self, structure: bool = False) -> None:
         """Show the document anew."""
+        if self.sheet.gone:
+            self.action_sheet("margins")
         if structure:
             self._sheets = {
                 key: sheet for key, sheet in self._sheets.items() if key in dict.fromkeys(k for _, k, _ in ORDER)
@@ -168,11 +172,10 @@ class Desk(PartActions, FileActions, TakeOnActions, Screen[None]):
         return plain_ascii(text) if self._ascii else text
 
     def _text(self, runs: Runs) -> Text:
-        line = Text(no_wrap=True, overflow="ellipsis")
+        line = Text()
         for text, role in runs:
-            line.append(self._plain(visible(text)), self.palette.style(role))
-        line.truncate(max(self.size.width, 20), overflow="ellipsis")
-        return line
+            line.append(visible(text), self.palette.style(role))
+        return fitted(line, max(self.size.width, 20), self._ascii)
 
     def _tell(self) -> None:
         document, ahead = self.document, self._ahead
@@ -406,18 +409,18 @@ class Desk(PartActions, FileActions, TakeOnActions, Screen[None]):
             self._finish(pending, None)
             return None
         self._busy = True
-        self.say("computing all margins ...")
+        self.say("computing the margins ...")
 
         def work() -> None:
-            table = MarginTable(pending.project)
-            self.app.call_from_thread(self._finish, pending, table)
+            made = self.document.make(pending)
+            self.app.call_from_thread(self._finish, pending, made)
 
         self.run_worker(work, thread=True, exclusive=True)
         return None
 
-    def _finish(self, pending: Pending, table: MarginTable | None) -> None:
+    def _finish(self, pending: Pending, made: Patch | MarginTable | None) -> None:
         self._busy = False
-        self.document.finish(pending, table)
+        self.document.finish(pending, made)
         self.refresh_all(structure=True)
         self.say(pending.text)
 

@@ -14,11 +14,14 @@ from engine.patch import Patch
 from engine.project import Project
 from engine.rating import Rating
 from engine.table import MarginTable
+from engine.touched import Touched, between
 
 from .history import History, Step
 
 LARGE = 400_000
 """Cells from which a computation afresh runs beside the screen rather than in its loop."""
+LARGE_FILE = 5_000
+"""Rows and entries from which a save is written beside the screen."""
 
 
 @dataclass(frozen=True, eq=False, slots=True)
@@ -58,20 +61,34 @@ class Pending:
     """It in a line, for when it is done."""
     record: Callable[[], None]
     """Moves the history on."""
+    touched: Touched | None
+    """What has to be computed; None: everything."""
     large: bool
-    """Whether its margins are better computed beside the screen."""
+    """Whether that is better done beside the screen than in its loop."""
 
 
-def is_patchable(table: MarginTable, project: Project) -> bool:
-    """Whether a later state of a project has the rows, columns and loads of a table, so that parts suffice."""
-    old = table.project
-    return (
-        len(old.points) == len(project.points)
-        and len(old.cases) == len(project.cases)
-        and old.loads is project.loads
-        and old.categories is project.categories
-        and old.materials is project.materials
-    )
+@dataclass(frozen=True, eq=False, slots=True)
+class Saving:
+    """A save that was begun: the project is a consistent whole, whatever is edited while it is written."""
+
+    project: Project
+    """What is written."""
+    target: Path
+    """Where."""
+    like: str | None
+    """Text whose hand is kept; None: that of the file there."""
+    last: Step | None
+    """The last step that it holds."""
+
+    @property
+    def large(self) -> bool:
+        """Whether writing it is better done beside the screen."""
+        size = sum(len(point.per_load) + len(point.stress) + 8 for point in self.project.points)
+        return size + sum(len(case.loads) + 8 for case in self.project.cases) > LARGE_FILE
+
+    def write(self) -> str:
+        """Write the file and give its text. Raises store.SaveError."""
+        return store.save(self.project, self.target, self.like)
 
 
 class Document:
@@ -115,15 +132,13 @@ class Document:
     # ---- looking ahead
 
     def preview(self, edit: Edit) -> State | None:
-        """The summary that an edit would give; None where that takes longer than a key. Raises Refusal."""
+        """The summary that an edit would give; None where that takes longer than a key may. Raises Refusal."""
         project = edits.apply(self.project, edit)
-        patch = Patch.between(self.table, project)
-        if patch is not None:
-            return state_of(project, patch.rating, patch.envelope)
-        if len(project.points) * len(project.checked) > LARGE:
+        touched = between(self.table, project)
+        if self._is_large(project, touched):
             return None
-        table = MarginTable(project)
-        return state_of(project, table.rating, table.envelope)
+        made = self._made(project, touched)
+        return state_of(project, made.rating, made.envelope)
 
     # ---- changing
 
@@ -131,7 +146,7 @@ class Document:
         """An edit applied to the project but not yet to the document. Raises Refusal; nothing has changed then."""
         project = edits.apply(self.project, edit)
         step = Step(edit, edits.inverse(self.project, edit), edits.describe(self.project, edit))
-        return Pending(project, step.text, lambda: self.history.commit(step), self._is_large(project))
+        return self._pending(project, step.text, lambda: self.history.commit(step))
 
     def begin_undo(self) -> Pending | None:
         """The last edit taken back, likewise; None where there is none."""
@@ -139,7 +154,7 @@ class Document:
             return None
         step = self.history.done[-1]
         project = edits.apply(self.project, step.inverse)
-        return Pending(project, f"undone: {step.text}", self.history.took_back, self._is_large(project))
+        return self._pending(project, f"undone: {step.text}", self.history.took_back)
 
     def begin_redo(self) -> Pending | None:
         """The last edit taken back made again, likewise; None where there is none."""
@@ -147,19 +162,30 @@ class Document:
             return None
         step = self.history.undone[-1]
         project = edits.apply(self.project, step.edit)
-        return Pending(project, f"redone: {step.text}", self.history.did_again, self._is_large(project))
+        return self._pending(project, f"redone: {step.text}", self.history.did_again)
 
-    def finish(self, pending: Pending, table: MarginTable | None = None) -> None:
-        """Make the pending project the present one; its table is computed here unless one is given."""
-        self.table = compute(pending.project, self.table) if table is None else table
+    def _pending(self, project: Project, text: str, record: Callable[[], None]) -> Pending:
+        touched = between(self.table, project)
+        return Pending(project, text, record, touched, self._is_large(project, touched))
+
+    def _is_large(self, project: Project, touched: Touched | None) -> bool:
+        cells = len(project.points) * len(project.checked) if touched is None else touched.cells(self.table.shape)
+        return cells > LARGE
+
+    def _made(self, project: Project, touched: Touched | None) -> Patch | MarginTable:
+        return MarginTable(project) if touched is None else Patch(self.table, project, touched)
+
+    def make(self, pending: Pending) -> Patch | MarginTable:
+        """Compute what a pending change needs, changing nothing: this may run in a thread of its own."""
+        return self._made(pending.project, pending.touched)
+
+    def finish(self, pending: Pending, made: Patch | MarginTable | None = None) -> None:
+        """Make the pending project the present one; what it needs is computed here unless it is given."""
+        done = self.make(pending) if made is None else made
+        self.table = done.apply() if isinstance(done, Patch) else done
         self.project = pending.project
         pending.record()
         self._state = self._notes = None
-
-    def _is_large(self, project: Project) -> bool:
-        """Whether computing the project's margins from here would hold the screen up."""
-        cells = len(project.points) * len(project.checked)
-        return cells > LARGE and not is_patchable(self.table, project)
 
     def commit(self, edit: Edit) -> str:
         """Apply an edit for good and say it in a line. Raises Refusal; then nothing has changed."""
@@ -183,16 +209,24 @@ class Document:
 
     # ---- the file
 
-    def save(self, path: Path | None = None) -> Path:
-        """Write the file. Raises store.SaveError or Refusal (no file name yet); the edits stay."""
+    def begin_save(self, path: Path | None = None) -> Saving:
+        """What a save under the document's name, or another, will write. Raises Refusal where there is no name yet."""
         target = path or self.path
         if target is None:
             raise Refusal("this project has no file name yet: save it under one")
         like = None if target == self.path else self._text
-        self._text = store.save(self.project, target, like)
-        self.path = target
-        self.history.mark_saved()
-        return target
+        return Saving(self.project, target, like, self.history.last)
+
+    def finish_save(self, saving: Saving, text: str) -> None:
+        """The file holds what the save was begun with; the document goes by its name from now on."""
+        self.path, self._text = saving.target, text
+        self.history.mark_saved(saving.last)
+
+    def save(self, path: Path | None = None) -> Path:
+        """Write the file. Raises store.SaveError or Refusal; the edits stay."""
+        saving = self.begin_save(path)
+        self.finish_save(saving, saving.write())
+        return saving.target
 
     def reload(self) -> None:
         """Read the file again; edits not saved and the history are gone. Raises store.ProjectError."""

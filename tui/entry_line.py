@@ -11,7 +11,8 @@ from textual import events
 from textual.widgets import Static
 
 from .line_editor import LineEditor
-from .palette import Palette, plain_ascii, visible
+from .palette import Palette, visible
+from .texts import fitted
 
 Submit = Callable[[str], str | None]
 """Takes the text; gives back why it is refused, or None."""
@@ -143,11 +144,7 @@ class EntryLine(Static):
             if self._request is not None
             else Text(f" {visible(self._message)}", self._palette.style("plain"))
         )
-        line.no_wrap = True
-        line.truncate(width, overflow="ellipsis")
-        if self._ascii:
-            line.plain = plain_ascii(line.plain)
-        self.update(line)
+        self.update(fitted(line, width, self._ascii))
 
     def _entry(self, width: int) -> Text:
         """Label, what was typed with the cursor in it, why it was refused; of a long text the part at the cursor."""

@@ -13,6 +13,7 @@ from engine.store import ProjectError, SaveError
 
 from . import state
 from .dialogs import Page, Question
+from .document import Saving
 from .entry_line import Request
 from .palette import visible
 from .words import plural
@@ -27,6 +28,8 @@ class FileActions:
     say: Callable[[str], None]
     refuse: Callable[[str], None]
     refresh_all: Callable[..., None]
+    run_worker: Callable[..., Any]
+    _saving = False
 
     def action_save(self) -> None:
         """Write the file."""
@@ -35,17 +38,44 @@ class FileActions:
         else:
             self.save()
 
-    def save(self, path: Path | None = None) -> str | None:
-        """Write the file; why not, or None."""
+    def save(self, path: Path | None = None, then: Callable[[], None] | None = None) -> str | None:
+        """Write the file, and then go on; why not, or None. A large file is written in a thread of its own."""
         try:
-            target = self.document.save(path)
+            saving = self.document.begin_save(path)
+            if not saving.large:
+                self._saved(saving, saving.write(), then)
+                return None
         except (SaveError, Refusal) as error:
             self.refuse(f"not saved: {error}")
             return str(error)
-        state.remember(target)
-        self.refresh_all()
-        self.say(f"saved {target.name}")
+        if self._saving:
+            self.refuse("the last save is still being written")
+            return None
+        self._saving = True
+        self.say("saving ...")
+        self.run_worker(lambda: self._write(saving, then), thread=True, group="save")
         return None
+
+    def _write(self, saving: Saving, then: Callable[[], None] | None) -> None:
+        try:
+            text = saving.write()
+        except SaveError as error:
+            self.app.call_from_thread(self._not_saved, str(error))
+            return
+        self.app.call_from_thread(self._saved, saving, text, then)
+
+    def _not_saved(self, why: str) -> None:
+        self._saving = False
+        self.refuse(f"not saved: {why}")
+
+    def _saved(self, saving: Saving, text: str, then: Callable[[], None] | None) -> None:
+        self._saving = False
+        self.document.finish_save(saving, text)
+        state.remember(saving.target)
+        self.refresh_all()
+        self.say(f"saved {saving.target.name}")
+        if then is not None:
+            then()
 
     def action_save_as(self) -> None:
         """Write the file under another name, and work on in that one."""
@@ -104,8 +134,8 @@ class FileActions:
             self.app.exit(return_code=0)
         elif answer == "save" and self.document.path is None:
             self.action_save_as()
-        elif answer == "save" and self.save() is None:
-            self.app.exit(return_code=0)
+        elif answer == "save":
+            self.save(then=lambda: self.app.exit(return_code=0))
 
 
 def error_text(error: ProjectError) -> Text:

@@ -50,6 +50,13 @@ class History:
         """The last undone step was redone."""
         self.done.append(self.undone.pop())
 
-    def mark_saved(self) -> None:
-        """The file now holds what is on screen."""
-        self.saved = len(self.done)
+    @property
+    def last(self) -> Step | None:
+        """The last step done."""
+        return self.done[-1] if self.done else None
+
+    def mark_saved(self, last: Step | None) -> None:
+        """The file now holds the state after a step (None: before any), unless that state can be reached no more."""
+        steps = [*self.done, *reversed(self.undone)]
+        places = [0] if last is None else [i for i, step in enumerate(steps, 1) if step is last]
+        self.saved = places[0] if places else None

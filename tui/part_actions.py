@@ -206,7 +206,7 @@ class PartActions:
             f"\n  and {len(users) - 8} more" if len(users) > 8 else ""
         )
         text = f"{kind} {name} is referred to by:\n{listed}\nDeleting it takes those away too. Undo brings all back."
-        options = [("x", "delete", f"delete {name} and these references")]
+        options = [("y", "delete", f"delete {name} and these references")]
         self.app.push_screen(Question(text, options), lambda answer: self._commit_or_refuse(edit) if answer else None)
 
     def _delete_row(self, sheet: StressSheet) -> None:

@@ -47,6 +47,11 @@ class WorkSheet:
     def __init__(self, document: Document) -> None:
         self.document = document
 
+    @property
+    def gone(self) -> bool:
+        """Whether the part that the sheet is about is there no longer, under this name."""
+        return False
+
     # ---- drawing (see grid.Sheet)
 
     def size(self) -> tuple[int, int]:

@@ -40,6 +40,10 @@ class StressSheet(WorkSheet):
         return found
 
     @property
+    def gone(self) -> bool:
+        return self.point_name not in self.document.project.names("point")
+
+    @property
     def _rows(self) -> StressRows:
         return self.point.stress if self.of == "stress" else self.point.per_load
 

@@ -14,6 +14,7 @@ from engine.material import LIMITS
 
 from .document import State
 from .palette import MARKS, VERDICT_ROLES, Palette, visible
+from .texts import fitted
 from .words import VERDICT, governing_case, plural
 
 _ORDER: tuple[Verdict, ...] = ("short", "split", "thin", "no-data", "clear")
@@ -25,9 +26,9 @@ class SummaryLines(Static):
 
     DEFAULT_CSS = "SummaryLines { height: 3; }"
 
-    def __init__(self, palette: Palette) -> None:
+    def __init__(self, palette: Palette, ascii_only: bool = False) -> None:
         super().__init__("", markup=False)
-        self._palette = palette
+        self._palette, self._ascii = palette, ascii_only
 
     def tell(
         self, state: State, dirty: bool, notes: int, shows: str, where: Sequence[str], typing: bool = False
@@ -42,7 +43,7 @@ class SummaryLines(Static):
             self._second(state, notes, width, typing),
             self._third(shows, where, width),
         ]
-        self.update(Text("\n").join(lines))
+        self.update(Text("\n").join(fitted(line, width, self._ascii) for line in lines))
 
     def _first(self, state: State, dirty: bool, width: int, typing: bool) -> Text:
         settings = state.project.settings
@@ -114,5 +115,4 @@ class SummaryLines(Static):
         if gap >= 1:
             line.append(" " * gap)
             line.append_text(right)
-        line.truncate(width, overflow="ellipsis")
         return line
