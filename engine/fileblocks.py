@@ -7,6 +7,7 @@ from bisect import bisect_left
 from collections import Counter, defaultdict
 from collections.abc import Callable, Iterator, Sequence
 from dataclasses import dataclass, field
+from itertools import pairwise
 
 from engine.assembly import TOP
 from engine.spans import Statement
@@ -105,10 +106,10 @@ class Blocks:
             gaps[spare] = ""
 
     def _between(self) -> Iterator[tuple[str, str]]:
-        """Kind and blank lines above each block that has nothing but blank lines between it and the one above."""
-        for place, block in enumerate(self.blocks[1:], 1):
+        """The blank lines above each block that has nothing else above it, with the kind if the two are of one kind."""
+        for place, (upper, lower) in enumerate(pairwise(self.blocks), 1):
             if not self._gaps[place].strip():
-                yield block.owner[0], self._gaps[place]
+                yield lower.owner[0] if lower.owner[0] == upper.owner[0] else "", self._gaps[place]
 
     def _separator(self, block: Block, seen: Counter[tuple[str, str]]) -> str:
         """The blank lines between entries, as most entries of that kind have them, or else most entries."""

@@ -63,20 +63,19 @@ class Hand:
         if isinstance(old, Mapping) and isinstance(new, Mapping):
             self.table(node, path, old, new)
         elif isinstance(old, list) and isinstance(new, list) and node.kind == "array":
-            self.list(node, path, old, new)
+            self.array(node, path, old, new)
         else:
             written = self._spelling.like(self.text[node.start : node.end], new)
             self.changes.replace(node.start, node.end, written)
 
-    def list(self, node: Node, path: tuple[str, ...], old: list[Plain], new: list[Plain]) -> None:
-        """Makes an array say `new`; what is alike at its beginning and end stays."""
-        shorter = min(len(old), len(new))
-        head = tail = 0
+    def array(self, node: Node, path: tuple[str, ...], old: list[Plain], new: list[Plain]) -> None:
+        """Makes an array say `new`; of one that grows or shrinks what is alike at its beginning and end stays."""
+        tail = 0
         if len(old) != len(new):
-            head = _alike(zip(old, new, strict=False), shorter)
-            tail = _alike(zip(reversed(old), reversed(new), strict=False), shorter - head)
-        both = shorter - tail
-        for place in range(head, both):
+            pairs = zip(reversed(old), reversed(new), strict=False)
+            tail = sum(1 for _ in takewhile(lambda pair: pair[0] == pair[1], pairs))
+        both = min(len(old), len(new)) - tail
+        for place in range(both):
             self.value(node.items[place], path, old[place], new[place])
         for place in range(both, len(old) - tail):
             self._container(node).take_out(node.members[place])
@@ -171,8 +170,3 @@ class Hand:
                 break
             start = line
         return start
-
-
-def _alike(pairs: Iterable[tuple[Plain, Plain]], most: int) -> int:
-    """How many of the first pairs are equal, up to a number."""
-    return min(most, sum(1 for _ in takewhile(lambda pair: pair[0] == pair[1], pairs)))

@@ -279,7 +279,7 @@ class _Save:
         if node.kind == "array":
             pairs = zip(match.found, match.new, strict=True)
             new = [wanted(self._codec, kind, {} if i is None else raw[i], part) for i, part in pairs]
-            self._hand.list(node, (kind,), raw, new)
+            self._hand.array(node, (kind,), raw, new)
             return
         for place, part in zip(match.found, match.new, strict=True):
             if place is not None and not (self._steady and _same(match.old[place], part)):

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import os
 from collections.abc import Iterable
 from functools import partial
 from pathlib import Path
@@ -94,13 +95,13 @@ class HexlipseApp(App[None]):
     def _begin(self) -> None:
         if self._path is None:
             self.push_screen(Recent(state.recent(), self._palette), self._chosen)
-        elif self._path.exists():
+        elif os.path.exists(self._path):
             self._open(self._path)
         else:
             self._ask_new(self._path)
 
     def _ask_new(self, path: Path) -> None:
-        if not path.parent.is_dir():
+        if not os.path.isdir(path.parent):
             self._stop(f"There is no folder {path.parent} to start {path.name} in.")
             return
         text = f"There is no file {path}."

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import os
 from collections.abc import Callable
 from pathlib import Path
 from typing import Any
@@ -84,10 +85,12 @@ class FileActions:
         def submit(text: str) -> str | None:
             if not text.strip():
                 return "a file name is needed"
-            path = Path(text.strip()).expanduser()
+            path = Path(os.path.expanduser(text.strip()))
+            if not path.name or os.path.isdir(path):
+                return "that is a folder: a file name is needed"
             if path.suffix != ".toml":
                 path = path.with_name(path.name + ".toml")
-            if path.exists() and path != self.document.path:
+            if os.path.exists(path) and path != self.document.path:
                 self._ask_overwrite(path)
                 return None
             return self.save(path)

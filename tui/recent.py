@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import os
 from collections.abc import Sequence
 from pathlib import Path
 from typing import ClassVar
@@ -76,8 +77,8 @@ class Recent(Screen["Path | str | None"]):
         """Ask for a file name."""
 
         def submit(text: str) -> str | None:
-            path = Path(text.strip()).expanduser()
-            if not path.is_file():
+            path = Path(os.path.expanduser(text.strip()))
+            if not os.path.isfile(path):
                 return "there is no such file"
             self.dismiss(path)
             return None

@@ -38,7 +38,7 @@ def recent() -> list[Path]:
     """Projects opened lately, the last one first, without those that are gone."""
     found = _read().get("recent", [])
     paths = [Path(p) for p in found if isinstance(p, str)] if isinstance(found, list) else []
-    return [path for path in paths if path.is_file()]
+    return [path for path in paths if os.path.isfile(path)]
 
 
 def remember(path: Path) -> None:

@@ -9,11 +9,11 @@ import numpy as np
 
 from engine import criteria
 from engine.edits import Edit, Refusal, Set
-from engine.entry import parse
+from engine.entry import parse, parse_row
 from engine.figures import number_text, stress_text
 from engine.frozen import Array, StressRows
 from engine.project import Point
-from engine.stress import COMPONENTS
+from engine.stress import COMPONENTS, permutation
 from engine.units import SYSTEMS
 
 from .document import Document
@@ -92,7 +92,7 @@ class StressSheet(WorkSheet):
         given = self._rows.get(name)
         title: Runs = [(f" {'Here':<10} ", "dim"), (f"{self.point_name} {name} {self.column_name(column)}", "governs")]
         if given is None:
-            text = "no row yet: an entry starts one, its other components zero"
+            text = "no row yet: type all six components, zeros too"
             return [title, [(f" {'row':<10} ", "dim"), (text, "nodata")]]
         return [title, *self._state_lines(given)]
 
@@ -114,7 +114,10 @@ class StressSheet(WorkSheet):
 
     def prompt(self, row: int, column: int) -> str:
         unit = SYSTEMS[self.document.project.settings.units].stress
-        return f"{cut(self.point_name, 16).rstrip()} {self.row_name(row)} {self.column_name(column)} ({unit})"
+        name = f"{cut(self.point_name, 16).rstrip()} {self.row_name(row)}"
+        if self.row_name(row) in self._rows:
+            return f"{name} {self.column_name(column)} ({unit})"
+        return f"{name} {' '.join(self._order)} ({unit})"
 
     def initial(self, row: int, column: int) -> str:
         given = self._rows.get(self.row_name(row))
@@ -127,14 +130,23 @@ class StressSheet(WorkSheet):
             if given is None:
                 return None
             raise Refusal("a component is a number; x takes the whole row away, and then its cell has no data")
-        system = SYSTEMS[self.document.project.settings.units]
-        value = parse(text, "stress", system)
-        values = np.zeros(6) if given is None else given.copy()
-        place = COMPONENTS.index(self._order[column])
-        if given is not None and values[place] == value:
+        values = self._typed(text, given, column)
+        if given is not None and np.array_equal(values, given):
             return None
-        values[place] = value
         return Set("point", self.point_name, (self.of, name), values.tolist())
+
+    def _typed(self, text: str, given: Array | None, column: int) -> Array:
+        """The row that an entry means: one component of a row there is, or all six of any row.
+
+        A missing component is never zero: a row that is not there yet is typed whole.
+        """
+        system = SYSTEMS[self.document.project.settings.units]
+        if given is not None and len(text.replace(";", " ").split()) != len(COMPONENTS):
+            values = given.copy()
+            values[COMPONENTS.index(self._order[column])] = parse(text, "stress", system)
+            return values
+        row = parse_row(text, len(COMPONENTS), "stress", system)
+        return np.array(row)[permutation(self._order)]
 
     def removal(self, row: int) -> Edit | None:
         """The edit that takes a row away."""

@@ -232,11 +232,51 @@ one = 20
 '''
 """Kinds mixed, tables far from their entries, no blank line."""
 
+SPOKEN = """\
+format = 1
+[project]
+title = "Spoken"
+units = "mm-N-MPa"
+components = "xx yy zz xy yz zx"
+accept = "both"
+thin = 0
+[[category]]
+name = "c"
+yield = 1.5
+[[case]]
+name = "a"
+category = "c"
+label = ""
+check = true
+loads = {}
+
+# about b
+# in two lines
+[[case]]
+name = "b"
+category = "c"
+# below b
+
+# of nobody
+
+[[case]]
+category = "c" # of c
+label = "C"
+name = "c"
+
+[[case]]
+category = "c"
+label = "D"
+name = "d"
+"""
+"""Defaults written out, comments that touch entries and one that does not."""
+
 FILES = {
     "bracket": BRACKET,
     "winch": WINCH,
     "winch, crlf, byte order mark": "\ufeff" + WINCH.replace("\n", "\r\n"),
     "bracket, crlf": BRACKET.replace("\n", "\r\n"),
     "scattered": SCATTERED,
+    "spoken": SPOKEN,
 }
 """By what is odd about each."""

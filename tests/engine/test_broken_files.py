@@ -113,6 +113,7 @@ BROKEN = [
     # the top of the file
     ("format = 1", "@", "", 'key "format" is missing', "expected format = 1", ""),
     ("format = 1", '@format = "1"', "format", 'found "1"', "expected the whole number 1", ""),
+    ("format = 1", "@format = true", "format", "found true", "expected the whole number 1", ""),
     ("format = 1", "@format = 1.0", "format", "found 1.0", "expected the whole number 1", ""),
     ("format = 1", "@format = 0", "format", "found 0", "expected the whole number 1", ""),
     ("format = 1", "@format = 3", "format", "found 3", "this program reads format 1: a later", ""),
@@ -278,6 +279,13 @@ def test_no_control_character_reaches_the_terminal() -> None:
     assert all(c == "\n" or unicodedata.category(c) not in {"Cc", "Cf"} for c in shown)
 
 
+def test_no_control_character_of_a_file_name_reaches_the_terminal(tmp_path: Path) -> None:
+    with pytest.raises(ProjectError) as caught:
+        load(tmp_path / "\x1b[2J.toml")
+    assert "\x1b" not in str(caught.value)
+    assert "[2J.toml" in str(caught.value)
+
+
 def test_a_very_long_name_does_not_flood_the_terminal() -> None:
     text = SOUND.replace("wind = 800.0", "w" * 10_000 + " = 800.0")
     assert len(str(_refused(text))) < 500
@@ -286,9 +294,10 @@ def test_a_very_long_name_does_not_flood_the_terminal() -> None:
 @pytest.mark.parametrize("start", ["", "\ufeff"], ids=["plain", "byte order mark"])
 @pytest.mark.parametrize("newline", ["\n", "\r\n"], ids=["lf", "crlf"])
 def test_lines_are_counted_alike_in_every_kind_of_text(start: str, newline: str) -> None:
-    for new in ("thin = true", "thin = 1 MPa"):
+    for new, word in (("thin = true", "true"), ("thin = 1 MPa", '"MPa"'), ("thin = ", "the end of the line")):
         error = _refused(start + SOUND.replace("thin = 0.10", new).replace("\n", newline))
         assert [(fault.line, fault.path) for fault in error.faults] == [(8, "project.thin")]
+        assert f"found {word}" in error.faults[0].message
 
 
 # Files that are none

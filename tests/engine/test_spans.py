@@ -233,7 +233,7 @@ def documents(draw: st.DrawFn) -> str:
             continue
         for key in range(draw(st.integers(0, 3))):
             name = draw(keys(10 * place + key)) + draw(st.sampled_from(["", "", f" . d{place}{key}"]))
-            comment = draw(st.sampled_from(["", "  # \"'[", "\n\n# [x]"]))
+            comment = draw(st.sampled_from(["", "# x", "  # \"'[", "\n\n# [x]"]))
             lines.append(f"{draw(BLANKS)}{name} = {draw(VALUES)}{comment}")
     text = lines[0] + draw(st.sampled_from(["\n", "\r\n"])).join(lines[1:])
     return text + draw(st.sampled_from(["", "\n"]))

@@ -112,6 +112,13 @@ def test_a_text_that_no_file_can_hold_is_told(winch: Path) -> None:
     assert winch.read_text() == WINCH
 
 
+def test_a_file_written_afresh_is_read_before_it_is_saved(winch: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setattr(store, "render", lambda _: WINCH)  # says another project
+    with pytest.raises(SaveError, match="no text that reads as this project"):
+        save(apply(parse(WINCH), CHANGE), winch, like="")
+    assert winch.read_text() == WINCH
+
+
 def test_a_save_that_would_lose_the_hand_writes_afresh(monkeypatch: pytest.MonkeyPatch) -> None:
     project = apply(parse(WINCH), CHANGE)
     monkeypatch.setattr(store, "_kept", lambda *_: WINCH)  # says another project

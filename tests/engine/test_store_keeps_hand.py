@@ -2,20 +2,20 @@
 
 from __future__ import annotations
 
-import difflib
 from typing import Any
 
 import pytest
 
 from engine import store
-from engine.edits import Edit, Insert, Move, Remove, Rename, Set, Withdraw, apply, inverse
+from engine.edits import Edit, Insert, Move, Remove, Rename, Set, apply, inverse
 from engine.fileblocks import HEAD, Blocks
 from engine.project import Project
 from engine.spans import BOM, Spans
 from engine.store import parse, saved_text
 
 from ..random_projects import random_project
-from .hand_files import BRACKET, FILES, SCATTERED, WINCH
+from .hand_files import BRACKET, FILES, SCATTERED, SPOKEN, WINCH
+from .kept import after, lines
 from .random_edits import edited
 
 
@@ -29,215 +29,45 @@ def _never_afresh(monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.setattr(store, "render", render)
 
 
-def _after(text: str, *edits: Edit) -> str:
-    """The file after edits and a save, which says what the edited project says."""
-    project = parse(text)
-    for edit in edits:
-        project = apply(project, edit)
-    new = saved_text(project, text)
-    assert parse(new).same(project)
-    return new
+B = '# about b\n# in two lines\n[[case]]\nname = "b"\ncategory = "c"\n# below b\n'
 
 
-def _lines(before: str, after: str) -> tuple[list[str], list[str]]:
-    """Lines that went and lines that came."""
-    diff = list(difflib.ndiff(before.split("\n"), after.split("\n")))
-    return [line[2:] for line in diff if line[0] == "-"], [line[2:] for line in diff if line[0] == "+"]
+def test_an_entry_moves_with_the_comments_that_touch_it() -> None:
+    assert after(SPOKEN, Move("case", "b", 3)) == SPOKEN.replace(f"\n{B}", "") + f"\n{B}"
 
 
-FACTOR = "factor = 1.15                            # or { yield = 1.15, ultimate = 1.0 }"
-ROW = [120.0, 0.0, 0.0, 36.0, 0.0, 0.0]
+def test_an_entry_goes_with_the_comments_that_touch_it() -> None:
+    assert after(SPOKEN, Remove("case", "b")) == SPOKEN.replace(f"\n{B}", "")
 
 
-@pytest.mark.parametrize(
-    ("text", "edit", "gone", "new"),
-    [
-        # an inline table: one number of it
-        (
-            WINCH,
-            Set("case", "LC01", ("loads", "haul"), 13500.0),
-            ["loads = { haul = 12000.0, wind = 800.0 } # in N"],
-            ["loads = { haul = 13500.0, wind = 800.0 } # in N"],
-        ),
-        # a dotted key whose whole number stays one
-        (BRACKET, Set("case", "LC 1", ("loads", "pull"), 13500.0), ["loads.pull = +12_000"], ["loads.pull = 13500"]),
-        # a dotted key with blanks about its dot, and a comment
-        (
-            BRACKET,
-            Set("case", "LC 1", ("loads", "side"), 0.5),
-            ['loads . "side" = 8e2   # eight hundred'],
-            ['loads . "side" = 0.5   # eight hundred'],
-        ),
-        # a table of its own, and a key that is not ASCII
-        (BRACKET, Set("case", "two", ("loads", "Wärme"), 3.0), ['"Wärme" = 2.5'], ['"Wärme" = 3.0']),
-        # a load that was not named: after the others, dotted as they are
-        (BRACKET, Set("case", "LC 1", ("loads", "Wärme"), 1.0), [], ['loads."Wärme" = 1.0']),
-        # an inline table with a member more, one with a member less, and one whose last member goes
-        (
-            WINCH,
-            Set("point", "P01", ("kt",), {"Mz": 1.7, "T": 1.4, "N": 2.0}),
-            ["kt = { Mz = 1.7, T = 1.4 }"],
-            ["kt = { Mz = 1.7, T = 1.4, N = 2.0 }"],
-        ),
-        (
-            WINCH,
-            Set("case", "LC01", ("loads", "wind"), None),
-            ["loads = { haul = 12000.0, wind = 800.0 } # in N"],
-            ["loads = { haul = 12000.0 } # in N"],
-        ),
-        (WINCH, Set("case", "LC01", ("combine", "dead"), None), ["combine = { dead = 1.1 }"], []),
-        # one element of a row over several lines with comments
-        (
-            BRACKET,
-            Set("point", "P2", ("stress", "LC 1"), ROW),
-            ["  35.5, 0, 0 ]    # shear"],
-            ["  36.0, 0, 0 ]    # shear"],
-        ),
-        # the file's own order of components: one element of the row
-        (
-            WINCH,
-            Set("point", "P02", ("stress", "LC01"), [0.0, 125.0, 0, 35.0, 0, 0]),
-            ["LC01 = [120.0, 0, 0, 35.0, 0, 0]"],
-            ["LC01 = [125.0, 0, 0, 35.0, 0, 0]"],
-        ),
-        # a row that goes
-        (BRACKET, Set("point", "P2", ("stress", "two"), None), ["two = [1,2,3,4,5,6]"], []),
-        # a row that comes, into the table that is there
-        (
-            WINCH,
-            Set("point", "P02", ("stress", "dead"), [1.0, 2.0, 3.0, 4.0, 5.0, 6.0]),
-            [],
-            ["dead = [2.0, 1.0, 3.0, 4.0, 5.0, 6.0]"],
-        ),
-        # a table that comes
-        (
-            WINCH,
-            Set("point", "P03", ("stress", "LC01"), [1.0, 2.0, 3.0, 4.0, 5.0, 6.0]),
-            [],
-            ["[point.stress]", "LC01 = [2.0, 1.0, 3.0, 4.0, 5.0, 6.0]"],
-        ),
-        # a key that comes: after the last of the entry's own, above its tables
-        (WINCH, Set("point", "P02", ("label",), "Weld toe"), [], ['label = "Weld toe"']),
-        # a key that comes, indented as its neighbours
-        (BRACKET, Set("category", "normal", ("label",), "N"), [], ['\tlabel = "N"']),
-        # a key that goes, with the comment behind it
-        (WINCH, Set("point", "P01", ("factor",), None), [FACTOR], []),
-        # one number for both theories stays one
-        (BRACKET, Set("category", "normal", ("yield",), 1.6), ["\tyield = 1.5"], ["\tyield = 1.6"]),
-        # a table of one limit stays one where the other keeps its default
-        (BRACKET, Set("point", "P1", ("factor",), {"yield": 1.2}), ["factor.yield = 1.15"], ["factor.yield = 1.2"]),
-        # a table that a number can say stays a table
-        (
-            BRACKET,
-            Set("category", "normal", ("ultimate",), 2.25),
-            ["\tultimate = {tresca=2.0,von-mises=2}"],
-            ["\tultimate = {tresca=2.25,von-mises=2.25}"],
-        ),
-        # a row appended to a list over several lines, whose last has no comma
-        (
-            BRACKET,
-            Set("material", "steel", ("yield-at",), [[20, 345.0], [100, 318.0], [200, 300.0], [300, 280.0]]),
-            ["    [200, 300.0]   # hot, no comma"],
-            ["    [200, 300.0],   # hot, no comma", "    [300.0, 280.0]"],
-        ),
-        # a row taken out of it; the remark above stays
-        (
-            BRACKET,
-            Set("material", "steel", ("yield-at",), [[20, 345.0], [200, 300.0]]),
-            ["    [100, 318.0],"],
-            [],
-        ),
-        # a name taken out of a list over lines
-        (
-            BRACKET,
-            Set("point", "P1", ("not-felt",), ["Wärme"]),
-            ['not-felt = [ "side",   # no', '   "Wärme", ]'],
-            ['not-felt = [ "Wärme", ]'],
-        ),
-        # text over several lines
-        (
-            BRACKET,
-            Set("point", "P1", ("source",), "run 12,\nnode 4712"),
-            ['node 4711"""'],
-            ['node 4712"""'],
-        ),
-        # text in single quotes keeps them
-        (BRACKET, Set("project", "", ("title",), "C:\\x"), ["project.title = 'Bracket'"], ["project.title = 'C:\\x'"]),
-        # text that single quotes cannot hold
-        (BRACKET, Set("project", "", ("title",), "it's"), ["project.title = 'Bracket'"], ['project.title = "it\'s"']),
-        # a key of [project] written with dots
-        (BRACKET, Set("project", "", ("revision",), "C"), [], ['project.revision = "C"']),
-        # an entry written in an inline list
-        (
-            BRACKET,
-            Set("load", "side", ("label",), "Side pull"),
-            ['  { name = "side" , label = "S" },'],
-            ['  { name = "side" , label = "Side pull" },'],
-        ),
-        # another number for a name in a table by case
-        (
-            BRACKET,
-            Set("point", "P3", ("temperature", "two"), 61.0),
-            ['temperature = { "LC 1" = 20, two = 60.0 }'],
-            ['temperature = { "LC 1" = 20, two = 61.0 }'],
-        ),
-        # a table that headers of longer names make
-        (
-            BRACKET,
-            Set("section", "A-A", ("resultants",), {"Mz": {"pull": 210.0}, "T": {"pull": 145.0}}),
-            ["pull = 140.0 # arm"],
-            ["pull = 145.0 # arm"],
-        ),
-        # a table far below its entry
-        (
-            SCATTERED,
-            Set("point", "A", ("stress", "two"), [0.0] * 6),
-            [],
-            ["two = [0.0, 0.0, 0.0, 0.0, 0.0, 0.0]"],
-        ),
-        # a renamed load, everywhere it is named
-        (
-            BRACKET,
-            Rename("load", "side", "quer, 1"),
-            [
-                '  { name = "side" , label = "S" },',
-                'loads . "side" = 8e2   # eight hundred',
-                'not-felt = [ "side",   # no',
-            ],
-            [
-                '  { name = "quer, 1" , label = "S" },',
-                'loads . "quer, 1" = 8e2   # eight hundred',
-                'not-felt = [ "quer, 1",   # no',
-            ],
-        ),
-        # a renamed point with an acknowledgement
-        (WINCH, Rename("point", "P02", "P2"), ['name = "P02"', 'point = "P02"'], ['name = "P2"', 'point = "P2"']),
-        # an entry that goes, with the comments that touch it
-        (
-            BRACKET,
-            Remove("point", "P2"),
-            BRACKET[BRACKET.index('name = "P2"') : BRACKET.index('name = "P3"')].split("\n"),
-            [],
-        ),
-        # the last entry of its kind and of the file
-        (WINCH, Withdraw("P02", "hydrostatic-tension"), ["", *WINCH[WINCH.index("[[ack") :].split("\n")[:-1]], []),
-        # an entry that comes, with a blank line as between the others
-        (
-            WINCH,
-            Insert("load", 2, {"name": "new load"}),
-            [],
-            ["", "[[load]]", 'name = "new load"'],
-        ),
-    ],
-)
-def test_an_edit_touches_its_own_lines_alone(text: str, edit: Edit, gone: list[str], new: list[str]) -> None:
-    found_gone, found_new = _lines(text, _after(text, edit))
-    assert sorted(found_gone) == sorted(gone)
-    assert sorted(found_new) == sorted(new)
+def test_entries_renamed_together_keep_their_comments() -> None:
+    renames = [Rename("case", "b", "x"), Rename("case", "c", "y"), Rename("case", "d", "z")]
+    gone, new = lines(SPOKEN, after(SPOKEN, *renames))
+    assert (gone, new) == (['name = "b"', 'name = "c"', 'name = "d"'], ['name = "x"', 'name = "y"', 'name = "z"'])
+    moved = after(SPOKEN, *renames, Move("case", "y", 0))
+    assert 'yield = 1.5\n[[case]]\ncategory = "c" # of c\nlabel = "C"\nname = "y"\n\n[[case]]\n' in moved
+
+
+def test_all_acknowledgements_of_a_renamed_point_follow_it() -> None:
+    second = WINCH[WINCH.index("[[ack") :].replace("hydrostatic-tension", "elongation # noted")
+    text = WINCH + "\n" + second.replace('elongation # noted"', 'elongation" # noted')
+    gone, new = lines(text, after(text, Rename("point", "P02", "P2")))
+    assert gone == ['name = "P02"', 'point = "P02"', 'point = "P02"']
+    assert new == ['name = "P2"', 'point = "P2"', 'point = "P2"']
+
+
+def test_a_dotted_key_comes_below_the_last_of_its_table() -> None:
+    text = after(BRACKET, Set("case", "LC 1", ("loads", "Wärme"), 1.0))
+    assert 'loads . "side" = 8e2   # eight hundred\nloads."Wärme" = 1.0\n# a remark' in text
+
+
+def test_text_over_several_lines_has_the_line_ends_of_the_file() -> None:
+    text = after(WINCH.replace("\n", "\r\n"), Set("project", "", ("notes",), "three\nnew\nlines"))
+    assert 'notes = """\r\nthree\r\nnew\r\nlines"""\r\n' in text
 
 
 def test_where_new_things_stand() -> None:
-    text = _after(
+    text = after(
         WINCH,
         Set("point", "P02", ("label",), "Weld toe"),
         Set("point", "P01", ("stress", "LC01"), None),
@@ -256,7 +86,7 @@ def test_the_first_entry_of_a_kind_comes_below_those_of_earlier_kinds() -> None:
     project = SCATTERED[SCATTERED.index("[project]") : SCATTERED.index("[point.per-load]")]
     text = f"format = 1\n{project}[[category]]\nname = 'c'\nyield = 1\n"
     case = "[[case]]\nname = 'one'\ncategory = 'c'\n"
-    new = _after(f"{text}{case}", Insert("load", 0, {"name": "F"}))
+    new = after(f"{text}{case}", Insert("load", 0, {"name": "F"}))
     assert new == f"{text}[[load]]\nname = \"F\"\n{case}"
 
 
@@ -305,13 +135,13 @@ def test_newlines_the_byte_order_mark_and_the_end_of_the_file_stay(name: str) ->
 
 def test_a_swap_of_names_keeps_what_each_says() -> None:
     swap = [Rename("point", "P01", "tmp"), Rename("point", "P02", "P01"), Rename("point", "tmp", "P02")]
-    text = _after(WINCH, *swap)
+    text = after(WINCH, *swap)
     assert parse(text).names("point") == ("P02", "P01", "P03")
 
 
 def test_a_renamed_entry_keeps_its_comments_though_it_changed_too() -> None:
-    text = _after(WINCH, Rename("case", "LC01", "LC1"), Set("case", "LC1", ("loads", "haul"), 1.5))
-    assert _lines(WINCH, text)[1] == [
+    text = after(WINCH, Rename("case", "LC01", "LC1"), Set("case", "LC1", ("loads", "haul"), 1.5))
+    assert lines(WINCH, text)[1] == [
         'name = "LC1"',
         "loads = { haul = 1.5, wind = 800.0 } # in N",
         "temperature = { LC1 = 40.0 }",
@@ -320,7 +150,7 @@ def test_a_renamed_entry_keeps_its_comments_though_it_changed_too() -> None:
 
 
 def test_another_order_of_components_rewrites_the_rows() -> None:
-    text = _after(WINCH, Set("project", "", ("components",), "xx yy zz xy yz zx"))
+    text = after(WINCH, Set("project", "", ("components",), "xx yy zz xy yz zx"))
     assert "LC01 = [0.0, 120, 0, 35.0, 0, 0]" in text
     assert "# as the solver exports them" in text
 
