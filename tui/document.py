@@ -76,7 +76,7 @@ class Saving:
     target: Path
     """Where."""
     like: str | None
-    """Text whose hand is kept; None: that of the file there."""
+    """Text whose hand is kept: what the document was read from or last written as; None: it has none yet."""
     last: Step | None
     """The last step that it holds."""
 
@@ -214,8 +214,16 @@ class Document:
         target = path or self.path
         if target is None:
             raise Refusal("this project has no file name yet: save it under one")
-        like = None if target == self.path else self._text
-        return Saving(self.project, target, like, self.history.last)
+        return Saving(self.project, target, self._text, self.history.last)
+
+    def changed_underneath(self) -> bool:
+        """Whether the file no longer holds what was read from it or last written to it."""
+        if self.path is None or self._text is None:
+            return False
+        try:
+            return self.path.read_bytes() != self._text.encode("utf-8")
+        except OSError:
+            return False  # gone or unreadable: the save itself will say what is wrong
 
     def finish_save(self, saving: Saving, text: str) -> None:
         """The file holds what the save was begun with; the document goes by its name from now on."""

@@ -37,7 +37,17 @@ class FileActions:
         if self.document.path is None:
             self.action_save_as()
         else:
-            self.save()
+            self._save_here()
+
+    def _save_here(self, then: Callable[[], None] | None = None) -> None:
+        """Write under the document's own name; asks where somebody else changed the file meanwhile."""
+        if not self.document.changed_underneath():
+            self.save(then=then)
+            return
+        name = self.document.path.name
+        text = f"{name} was changed by somebody else since it was read here. The file as it is now is kept as {name}~."
+        options = [("o", "yes", "overwrite it with what is on this screen")]
+        self.app.push_screen(Question(text, options), lambda answer: self.save(then=then) if answer else None)
 
     def save(self, path: Path | None = None, then: Callable[[], None] | None = None) -> str | None:
         """Write the file, and then go on; why not, or None. A large file is written in a thread of its own."""
@@ -138,7 +148,7 @@ class FileActions:
         elif answer == "save" and self.document.path is None:
             self.action_save_as()
         elif answer == "save":
-            self.save(then=lambda: self.app.exit(return_code=0))
+            self._save_here(then=lambda: self.app.exit(return_code=0))
 
 
 def error_text(error: ProjectError) -> Text:

@@ -93,10 +93,15 @@ def _work(document: Document, row: int, column: int, limit: int, theory: int) ->
         return f"{LIMITS[limit]} is not asked for in this category"
     strength = float(rating.strength[limit, theory, rating.of_point[row], column])
     equivalent = stress_text(float(table.values[theory, row, column]))
-    factor = f"{rating.required[limit, theory, column]:.2f} x {rating.factor[limit, row]:.2f}"
+    factor = f"{_factor_text(rating.required[limit, theory, column])} x {_factor_text(rating.factor[limit, row])}"
     if math.isnan(strength):
         return f"{equivalent} x {factor}, no {LIMITS[limit]} strength known"
     return f"{equivalent} x {factor} of {stress_text(strength)} {LIMITS[limit]}"
+
+
+def _factor_text(factor: float) -> str:
+    """Two decimals, or as many as it has: a factor is multiplied by hand, so it is never rounded."""
+    return f"{factor:.2f}" if round(factor, 2) == factor else number_text(factor)
 
 
 def _said(margin: float) -> str:

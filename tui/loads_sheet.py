@@ -99,7 +99,7 @@ class LoadsSheet(WorkSheet):
         if not case.combine:
             return Cell("" if own is None else number_text(own))
         total = float(self.document.table.sets.magnitudes[row, column])
-        return Cell(number_text(total) if total or own is not None else "", "dim", "+")
+        return Cell(_clean_sum(total) if total or own is not None else "", "dim", "+")
 
     def frozen_width(self, room: int) -> int:
         return self._name_width(room) + 10
@@ -183,9 +183,9 @@ class LoadsSheet(WorkSheet):
         for name, factor in case.combine.items():
             value = float(sets.magnitudes[sets.place[name], column])
             if value:
-                parts.append(f"{number_text(factor)} x {number_text(value)} ({name})")
+                parts.append(f"{number_text(factor)} x {_clean_sum(value)} ({name})")
         total = float(sets.magnitudes[sets.place[case.name], column])
-        return f"{' + '.join(parts) or '0'} = {number_text(total)}; an entry here is the case's own part"
+        return f"{' + '.join(parts) or '0'} = {_clean_sum(total)}; an entry here is the case's own part"
 
     # ---- working
 
@@ -222,3 +222,8 @@ class LoadsSheet(WorkSheet):
     def _magnitude(self, text: str, load: Load) -> float:
         kind = kind_of_load_unit(load.unit, self._system)
         return parse(text, kind, self._system, difference=True) if kind else parse(text)
+
+
+def _clean_sum(total: float) -> str:
+    """A sum without the noise of adding: 1.1 x 12000 is 13200, not 13200.000000000002."""
+    return number_text(float(f"{total:.12g}"))

@@ -259,7 +259,7 @@ class SettingsSheet(WorkSheet):
     def edit(self, row: int, column: int, text: str) -> Edit | None:
         field = SETTINGS_FIELDS[row]
         value = plain_from(text, field, SYSTEMS[self.document.project.settings.units])
-        if value is None and field.path[0] in {"title", "revision", "notes"}:
+        if value is None and field.path == ("title",):
             value = ""
         if value == plain_of("project", self.document.project.settings, field.path):
             return None

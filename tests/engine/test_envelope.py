@@ -200,10 +200,6 @@ def test_what_governs_a_point(
     assert cell(envelope(*cases, ultimate=ultimate).of_point(0)) == expected
 
 
-def test_a_margin_that_equals_only_an_equal_of_the_least_does_not_govern() -> None:
-    found = envelope((0.9, 0.1 + FAR), (0.1, 0.9), (0.9, 0.1 + NEAR))
-    assert cell(found.of_point(0)) == (1, 0, "tresca")
-
 
 def test_nothing_governs_a_point_without_data() -> None:
     found = envelope(None, None).of_point(0)

@@ -1,4 +1,4 @@
-"""What the program remembers of its user stays in the folder of the test, and the caution of the first start is read."""
+"""What the program remembers of its user stays in the folder of the test; the first caution counts as read."""
 
 from __future__ import annotations
 

@@ -37,7 +37,8 @@ EDITS: list[Edit] = [
 def texts(state: State) -> tuple[object, ...]:
     """What the summary says of a state."""
     found = state.envelope.of_project()
-    return state.envelope.counts(), state.passes, state.complete, state.standing, found
+    governs = (found.point, found.case, found.limit, found.theory, found.margin)
+    return state.envelope.counts(), state.passes, state.complete, state.standing, governs
 
 
 def assert_fresh(table: MarginTable) -> None:
@@ -148,7 +149,9 @@ def test_a_save_writes_the_edits_and_nothing_else(winch: Document) -> None:
     assert store.load(winch.path).same(winch.project)
 
 
-def test_under_another_name_the_hand_of_the_old_file_is_kept_and_work_goes_on_there(winch: Document, tmp_path: Path) -> None:
+def test_under_another_name_the_hand_of_the_old_file_is_kept_and_work_goes_on_there(
+    winch: Document, tmp_path: Path
+) -> None:
     winch.commit(HAUL)
     other = tmp_path / "other.toml"
     winch.save(other)

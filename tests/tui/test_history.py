@@ -9,7 +9,9 @@ from tui.history import History, Step
 
 
 def step(number: int) -> Step:
-    return Step(Set("case", "LC01", ("temperature",), number), Set("case", "LC01", ("temperature",), 0), f"step {number}")
+    return Step(
+        Set("case", "LC01", ("temperature",), number), Set("case", "LC01", ("temperature",), 0), f"step {number}"
+    )
 
 
 def after(moves: str) -> History:

@@ -21,7 +21,9 @@ def test_the_state_folder_is_the_users_xdg_one(state_home: Path) -> None:
 
 
 @pytest.mark.parametrize("base", ["", "relative/folder"])
-def test_without_a_usable_xdg_folder_it_lies_in_the_home(base: str, tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+def test_without_a_usable_xdg_folder_it_lies_in_the_home(
+    base: str, tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
     monkeypatch.setenv("XDG_STATE_HOME", base)
     monkeypatch.setenv("HOME", str(tmp_path))
     assert state.folder() == tmp_path / ".local" / "state" / "hexlipse"
