@@ -41,7 +41,7 @@ def blocking_flags(project: Project, rating: Rating, envelope: Envelope) -> dict
     outside = np.array([_outside(m, rating, i).any() for i, m in enumerate(materials)], dtype=bool)
     with np.errstate(invalid="ignore"):
         low = np.zeros(len(project.points), dtype=bool)
-        for limit in rating.limits:
+        for limit in np.flatnonzero(rating.asked.any(axis=1)):
             low |= rating.factor[limit] < 1
         low |= bool((rating.required < 1).any())
     found = (brittle[rating.of_point], envelope.tension > 0, outside[rating.of_point], low)

@@ -84,7 +84,7 @@ class Page(ModalScreen[None]):
 
     def action_scroll(self, lines: int) -> None:
         """Move the text."""
-        self.query_one(VerticalScroll).scroll_relative(y=lines, animate=False)
+        self.query_one(VerticalScroll).scroll_relative(y=lines, animate=False, immediate=True)
 
     def action_close(self) -> None:
         """Close the page."""

@@ -11,7 +11,7 @@ from textual import events
 from textual.widgets import Static
 
 from .line_editor import LineEditor
-from .palette import Palette, visible
+from .palette import Palette, cut, visible
 from .texts import fitted
 
 Submit = Callable[[str], str | None]
@@ -149,7 +149,8 @@ class EntryLine(Static):
     def _entry(self, width: int) -> Text:
         """Label, what was typed with the cursor in it, why it was refused; of a long text the part at the cursor."""
         assert self._request is not None
-        label = f" {visible(self._request.label)}: "
+        asked = visible(self._request.label)
+        label = f" {cut(asked, min(cell_len(asked), max(8, width - 18)))}: "
         why = f"  {visible(self._why)}" if self._why else ""
         room = max(8, width - cell_len(label) - min(cell_len(why), width // 2) - 1)
         editor = self._editor

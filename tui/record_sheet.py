@@ -42,9 +42,7 @@ MATERIAL_FIELDS = (
 CATEGORY_FIELDS = (
     Field(("yield", "tresca"), "yld Tresca", "number", 12, hint="required factor, above 0"),
     Field(("yield", "von-mises"), "yld Mises", "number", 11, hint="required factor, above 0"),
-    Field(
-        ("ultimate", "tresca"), "ult Tresca", "number", 12, hint="a first one holds for both; empty: not asked"
-    ),
+    Field(("ultimate", "tresca"), "ult Tresca", "number", 12, hint="a first one holds for both; empty: not asked"),
     Field(
         ("ultimate", "von-mises"),
         "ult Mises",

@@ -32,7 +32,11 @@ def envelope(*cases: Pair | None, accept: str = "both", ultimate: dict[int, Pair
     more = ultimate or {}
     names = [str(place) for place in range(len(cases))]
     given = project(
-        [point("P", {name: axial(0.0 if INF in pair else 1.0) for name, pair in zip(names, cases, strict=True) if pair})],
+        [
+            point(
+                "P", {name: axial(0.0 if INF in pair else 1.0) for name, pair in zip(names, cases, strict=True) if pair}
+            )
+        ],
         [case(name, category=name) for name in names],
         categories=[
             Category(name, factors(pair or (0.0, 0.0)), factors(more[place]) if place in more else None)
@@ -99,7 +103,10 @@ def test_verdicts_take_the_least_known_margin_per_theory_from_different_cases() 
 
 def test_points_are_counted_by_verdict() -> None:
     given = project(
-        [point(name, {"A": axial(stress)} if stress else {}) for name, stress in zip("PQRST", (1, 290, 310, 400, 0), strict=True)],
+        [
+            point(name, {"A": axial(stress)} if stress else {})
+            for name, stress in zip("PQRST", (1, 290, 310, 400, 0), strict=True)
+        ],
         [case("A")],
     )
     counts = compute(given).envelope.counts()
@@ -200,7 +207,6 @@ def test_what_governs_a_point(
     assert cell(envelope(*cases, ultimate=ultimate).of_point(0)) == expected
 
 
-
 def test_nothing_governs_a_point_without_data() -> None:
     found = envelope(None, None).of_point(0)
     assert cell(found) == (-1, 0, None)
@@ -235,9 +241,7 @@ def test_a_governing_margin_is_the_least_of_both_theories() -> None:
     ],
 )
 def test_the_first_point_with_the_least_margin_is_the_worst(stresses: list[float | None], worst: int) -> None:
-    points = [
-        point(f"P{i}", {} if stress is None else {"A": axial(stress)}) for i, stress in enumerate(stresses)
-    ]
+    points = [point(f"P{i}", {} if stress is None else {"A": axial(stress)}) for i, stress in enumerate(stresses)]
     found = compute(project(points, [case("A")])).envelope
     assert found.worst_point() == worst
     assert found.of_project().point == worst

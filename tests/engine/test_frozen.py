@@ -122,7 +122,7 @@ def test_rows_do_not_follow_the_array_they_were_made_of() -> None:
     ],
 )
 def test_rows_that_do_not_fit_their_names_are_refused(names: list[str], array: Any) -> None:
-    with pytest.raises(ValueError, match="a name stands twice|names and an array of shape"):
+    with pytest.raises(ValueError, match=r"a name stands twice|names and an array of shape"):
         StressRows(names, array)
 
 

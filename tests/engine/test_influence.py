@@ -182,7 +182,9 @@ def test_a_load_that_does_not_act_as_given_is_no_data_where_it_acts(
     sense: str, not_felt: tuple[str, ...], magnitude: float, known: bool
 ) -> None:
     moving = loads("a") + loads("b", sense=sense)  # type: ignore[arg-type]
-    found = stress(project([point("P", per_load=UNIT, not_felt=not_felt)], [case("A", {"a": 1.0, "b": magnitude})], moving))
+    found = stress(
+        project([point("P", per_load=UNIT, not_felt=not_felt)], [case("A", {"a": 1.0, "b": magnitude})], moving)
+    )
     assert (found["A"] is not None) is known
 
 
@@ -291,7 +293,11 @@ WHY = [
     (point("P"), case("A"), "no row for A"),
     (point("P"), case("A", combine={"I": 1.0}), "no row for A, nor for all that it combines"),
     (point("P"), case("A", {"a": 1.0}, {"I": 1.0}), "no row for A, which has loads of its own beside what it combines"),
-    (point("P", per_load={"a": axial(1.0)}), case("A", {"b": 1.0}), "no stress per unit of b, and not said to be not felt"),
+    (
+        point("P", per_load={"a": axial(1.0)}),
+        case("A", {"b": 1.0}),
+        "no stress per unit of b, and not said to be not felt",
+    ),
     (point("P", per_load={"m": axial(1.0)}), case("A", {"m": 1.0}), "load m is reversible, which is not computed yet"),
     (point("P", per_load={"a": axial(1e300)}), case("A", {"a": 1e300}), "the stress is too large for a number"),
 ]

@@ -110,7 +110,9 @@ def test_a_combination_adds_its_own_loads_too() -> None:
 
 def test_a_combination_adds_through_any_depth_whatever_the_order_of_the_file() -> None:
     found = magnitudes(
-        case("top", {"b": 0.5}, {"mid": 2.0, "low": 1.0}), case("mid", {"b": 1.0}, {"low": 3.0}), case("low", {"a": 1.0})
+        case("top", {"b": 0.5}, {"mid": 2.0, "low": 1.0}),
+        case("mid", {"b": 1.0}, {"low": 3.0}),
+        case("low", {"a": 1.0}),
     )
     assert found == {"low": [1.0, 0.0], "mid": [3.0, 1.0], "top": [7.0, 2.5]}
 

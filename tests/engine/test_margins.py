@@ -49,7 +49,9 @@ def test_a_margin_is_strength_over_factored_equivalent_less_one() -> None:
         categories=[category("normal", (1.5, 1.4), (2.0, 1.9))],
         materials=[material(yield_=300.0, ultimate=450.0)],
     )
-    assert margin(given) == pytest.approx({"tresca": 300 / (1.5 * 1.25 * 80) - 1, "von-mises": 300 / (1.4 * 1.25 * 40 * ROOT3) - 1})
+    assert margin(given) == pytest.approx(
+        {"tresca": 300 / (1.5 * 1.25 * 80) - 1, "von-mises": 300 / (1.4 * 1.25 * 40 * ROOT3) - 1}
+    )
     ultimate = {"tresca": 450 / (2.0 * 2.0 * 80) - 1, "von-mises": 450 / (1.9 * 2.0 * 40 * ROOT3) - 1}
     assert margin(given, "ultimate") == pytest.approx(ultimate)
 
@@ -239,9 +241,7 @@ def test_uniaxial_stress_is_governed_by_both() -> None:
 
 
 def test_the_ultimate_limit_may_govern() -> None:
-    given = direct(
-        {"A": axial(180.0)}, categories=[category("normal", 1.0, 2.0)], materials=[material(ultimate=450.0)]
-    )
+    given = direct({"A": axial(180.0)}, categories=[category("normal", 1.0, 2.0)], materials=[material(ultimate=450.0)])
     assert governing(given)["accepted"] == ("A", "ultimate", "both")
 
 
@@ -257,7 +257,9 @@ def test_the_factor_of_a_category_decides_which_case_governs() -> None:
 def loop_governing(table: MarginTable, row: int, theory: str) -> tuple[int, int]:
     """The first case and limit within 1e-9 of the least margin, looked for cell by cell."""
     margins = [table.margin[limit][theory][row] for limit in LIMITS]  # type: ignore[index]
-    known = [(case, i, m[case]) for case in range(table.shape[1]) for i, m in enumerate(margins) if not np.isnan(m[case])]
+    known = [
+        (case, i, m[case]) for case in range(table.shape[1]) for i, m in enumerate(margins) if not np.isnan(m[case])
+    ]
     least = min((m for _, _, m in known), default=NAN)
     return next(((case, limit) for case, limit, m in known if m <= least + 1e-9), (-1, 0))
 
@@ -318,9 +320,7 @@ TENSION = [
 def test_hydrostatic_tension_is_a_sum_of_principals_above_four_yields_over_the_factor(
     stress: list[float], factor: float, required: Any, tense: bool
 ) -> None:
-    given = project(
-        [point("P", {"A": stress}, factor=factor)], [case("A")], categories=[category("normal", required)]
-    )
+    given = project([point("P", {"A": stress}, factor=factor)], [case("A")], categories=[category("normal", required)])
     table = compute(given)
     assert table.hydrostatic.item() is tense
     assert table.envelope.tension.tolist() == [int(tense)]

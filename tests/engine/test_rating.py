@@ -73,7 +73,10 @@ def test_the_strength_of_a_cell_is_that_at_its_temperature() -> None:
 def test_what_stress_may_reach_is_strength_over_required_factor() -> None:
     rating = rated(
         project(
-            [point("P")], [case("A")], categories=[category("normal", (1.5, 1.25), 2.0)], materials=[material(ultimate=450.0)]
+            [point("P")],
+            [case("A")],
+            categories=[category("normal", (1.5, 1.25), 2.0)],
+            materials=[material(ultimate=450.0)],
         )
     )
     assert np.allclose(rating.allowable[:, :, 0, 0], [[200.0, 240.0], [225.0, 225.0]], rtol=1e-15)
