@@ -38,7 +38,8 @@ def hydrostatic_flags(trace: Array, rating: Rating, rows: Places, columns: Place
     Sum of principals x point factor above 4 x yield / required factor, the larger factor of the two theories: the form
     of ASME BPVC VIII-2, 5.3.2. trace: (rows, columns) sums of principal stresses.
     """
-    total = trace * rating.factor[0, rows][:, None]
+    with np.errstate(over="ignore", invalid="ignore"):
+        total = trace * rating.factor[0, rows][:, None]
     bound = 4.0 * rating.strength[0, 1][:, columns] / np.fmax(rating.required[0, 0], rating.required[0, 1])[columns]
     with np.errstate(invalid="ignore"):
         return np.asarray(total > bound[rating.of_point[rows]] * (1 + TOLERANCE))
@@ -67,7 +68,11 @@ def equivalents_of(
     values = np.empty((2, *shape))
     flat = np.ascontiguousarray(stress).reshape(6, -1)
     equivalents_into(flat, values[0].reshape(-1), values[1].reshape(-1))
-    return Equivalents(values, hydrostatic_flags(stress[:3].sum(axis=0), rating, rows, columns))
+    with np.errstate(over="ignore", invalid="ignore"):
+        if not np.isfinite(values[0].sum()):  # a stress that no number can hold is not known either
+            values[:, ~np.isfinite(values).all(axis=0)] = np.nan
+        trace = stress[:3].sum(axis=0)
+    return Equivalents(values, hydrostatic_flags(trace, rating, rows, columns) & ~np.isnan(values[1]))
 
 
 def margins_of(values: Array, rating: Rating, rows: Places, columns: Places | slice, limit: int) -> Array:
@@ -79,7 +84,7 @@ def margins_of(values: Array, rating: Rating, rows: Places, columns: Places | sl
     factor = rating.factor[limit, rows][:, None]
     classes = rating.of_point[rows]
     found = np.empty(values.shape)
-    with np.errstate(divide="ignore", invalid="ignore"):
+    with np.errstate(divide="ignore", over="ignore", invalid="ignore"):
         for theory in range(2):
             allowable = rating.allowable[limit, theory][:, columns][classes]
             np.multiply(values[theory], factor, out=found[theory])
@@ -91,7 +96,7 @@ def margins_of(values: Array, rating: Rating, rows: Places, columns: Places | sl
 def few_margins(values: Array, rating: Rating, rows: Places, columns: Places, limits: int) -> Array:
     """(limits, 2, rows, columns) margins of a few cells, the first so many of LIMITS at once: fewer, smaller steps."""
     allowable = rating.allowable[:limits][..., columns].take(rating.of_point[rows], axis=2)
-    with np.errstate(divide="ignore", invalid="ignore"):
+    with np.errstate(divide="ignore", over="ignore", invalid="ignore"):
         found: Array = allowable / (values * rating.factor[:limits, None, rows, None])
     found -= 1.0
     return found
@@ -163,7 +168,7 @@ def govern(
         within = np.empty((2, *columns.shape), dtype=bool)
         for limit in range(2):
             allowable = rating.allowable[limit, theory][rating.of_point[rows][:, None], columns]
-            with np.errstate(divide="ignore", invalid="ignore"):
+            with np.errstate(divide="ignore", over="ignore", invalid="ignore"):
                 within[limit] = allowable / (equivalent * rating.factor[limit, rows][:, None]) - 1.0 <= bound[:, None]
         place = np.argmax(within[0] | within[1], axis=1)
         at = np.arange(len(rows))

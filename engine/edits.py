@@ -286,6 +286,7 @@ def _set(project: Project, edit: Set) -> Project:
 
 def _changed(part: Any, edit: Set) -> Any:
     """The part with the new value, read as the file would be."""
+    _plain(part, edit.kind, edit.path[:1])  # refuses a key that the kind does not have
     rows = getattr(part, edit.path[0].replace("-", "_"), None)
     if len(edit.path) == 2 and isinstance(rows, StressRows):
         key = CODEC.key(edit.kind, edit.path[0])
@@ -294,16 +295,24 @@ def _changed(part: Any, edit: Set) -> Any:
     if len(edit.path) == 2 and edit.path[0] in {"loads", "combine"} and edit.kind == "case":
         return _magnitude_set(part, edit)
     document = CODEC.write(edit.kind, part)
-    _plain(part, edit.kind, edit.path[:1])  # refuses a key that the kind does not have
-    holder: dict[str, Plain] = document
-    for word in edit.path[:-1]:
-        inner = holder.get(word)
-        holder[word] = holder = dict(inner) if isinstance(inner, Mapping) else {}
-    if edit.value is None:
-        holder.pop(edit.path[-1], None)
-    else:
-        holder[edit.path[-1]] = edit.value
+    _place(document, edit.path, edit.value)
     return CODEC.read(edit.kind, document)
+
+
+def _place(table: dict[str, Plain], path: tuple[str, ...], value: Plain) -> None:
+    """Set a value in a plain table, or take it away with None; a table in it that becomes empty goes too."""
+    key, *rest = path
+    if rest:
+        inner = table.get(key, {})
+        if not isinstance(inner, Mapping):
+            raise Refusal(f"{clean(key)} is one value here, not a table: set it whole")
+        changed = dict(inner)
+        _place(changed, tuple(rest), value)
+        value = changed or None
+    if value is None:
+        table.pop(key, None)
+    else:
+        table[key] = value
 
 
 def _magnitude_set(part: Any, edit: Set) -> Any:
@@ -343,8 +352,7 @@ def _hold_combinations(project: Project) -> None:
 
 
 def _insert(project: Project, edit: Insert) -> Project:
-    if edit.kind not in PLURAL:
-        raise Refusal(f"there is no kind of part called {shown(edit.kind)}")
+    _kind(edit.kind)
     part = CODEC.read(edit.kind, edit.document)
     _free(project, edit.kind, part.name)
     parts = list(project.of(edit.kind))
@@ -361,7 +369,13 @@ def _free(project: Project, kind: Kind, name: str) -> None:
         raise Refusal(f"there is a {kind} named {shown(name)} already")
 
 
+def _kind(kind: str) -> None:
+    if kind not in PLURAL:
+        raise Refusal(f"there is no kind of part called {shown(kind)}")
+
+
 def _remove(project: Project, edit: Remove) -> Project:
+    _kind(edit.kind)
     part = _part(project, edit.kind, edit.name)
     users = uses(project, edit.kind, edit.name)
     if users:
@@ -370,6 +384,7 @@ def _remove(project: Project, edit: Remove) -> Project:
 
 
 def _rename(project: Project, edit: Rename) -> Project:
+    _kind(edit.kind)
     part = _part(project, edit.kind, edit.old)
     new = PARTS[edit.kind].keys[0].read(edit.new)
     if new == edit.old:
@@ -380,6 +395,7 @@ def _rename(project: Project, edit: Rename) -> Project:
 
 
 def _move(project: Project, edit: Move) -> Project:
+    _kind(edit.kind)
     part = _part(project, edit.kind, edit.name)
     parts = [other for other in project.of(edit.kind) if other is not part]
     parts.insert(max(0, edit.index), part)

@@ -55,10 +55,14 @@ class Influence:
         Returns (6, rows, cases), stress unit; NaN where something needed is missing or a number overflows.
         """
         magnitudes = sets.magnitudes[cases]
-        if len(cases) == 1:  # BLAS takes another path for one column, with another last bit: pad to two
+        per_load = self.per_load[:, rows]
+        count = per_load.shape[1]
+        if len(cases) == 1:  # BLAS takes another path for one column or row, with another last bit: pad to two
             magnitudes = np.concatenate([magnitudes, magnitudes])
+        if count == 1:
+            per_load = np.concatenate([per_load, per_load], axis=1)
         with np.errstate(over="ignore", invalid="ignore"):
-            block: Array = np.matmul(self.per_load[:, rows], magnitudes.T)[:, :, : len(cases)]
+            block: Array = np.matmul(per_load, magnitudes.T)[:, :count, : len(cases)]
             unknown = self.unknown[rows]
             if unknown.any():
                 acting = (magnitudes[: len(cases)] != 0).T

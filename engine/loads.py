@@ -216,5 +216,5 @@ class LoadSets:
         for name, factor in case.combine.items():
             total = total + factor * self.magnitudes[self.place[name]]
             size = size + abs(factor) * self.sizes[self.place[name]]
-        total[np.abs(total) <= VANISHES * size] = 0.0
+        total[(np.abs(total) <= VANISHES * size) & np.isfinite(size)] = 0.0  # what overflowed is not zero
         return total, size

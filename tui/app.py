@@ -3,7 +3,8 @@
 from __future__ import annotations
 
 import os
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
+from contextlib import suppress
 from functools import partial
 from pathlib import Path
 from typing import ClassVar
@@ -12,11 +13,13 @@ from rich.text import Text
 from textual import events
 from textual.app import App
 from textual.binding import Binding, BindingType
-from textual.command import DiscoveryHit, Hit, Hits, Provider
+from textual.command import CommandPalette, DiscoveryHit, Hit, Hits, Provider
+from textual.filter import LineFilter
 
 from engine.store import ProjectError
 
 from . import state
+from .ascii_filter import AsciiFilter
 from .desk import Desk
 from .dialogs import Page, Question
 from .document import Document
@@ -55,6 +58,14 @@ class DeskCommands(Provider):
                 yield Hit(score, matcher.highlight(name), partial(self.screen.run_action, action), help=text)
 
 
+class Commands(CommandPalette):
+    """The stock palette, which a page key pressed while its list is being filled would end the program from."""
+
+    def _action_command_list(self, action: str) -> None:
+        with suppress(KeyError):
+            super()._action_command_list(action)
+
+
 class HexlipseApp(App[None]):
     """The program on the screen."""
 
@@ -76,6 +87,10 @@ class HexlipseApp(App[None]):
         self._ascii = ascii_only
         self.animation_level = "none"
         self.set_class(ascii_only, "-plain-ascii")
+
+    def get_line_filters(self) -> Sequence[LineFilter]:
+        filters = super().get_line_filters()
+        return [*filters, AsciiFilter()] if self._ascii else filters
 
     def on_mount(self) -> None:
         self.app_resume_signal.subscribe(self, lambda _: self.refresh())  # after fg the screen is blank
@@ -163,6 +178,11 @@ class HexlipseApp(App[None]):
         take = getattr(self.screen, "take_paste", None)
         if take is not None and take(event.text):
             event.stop()
+
+    def action_command_palette(self) -> None:
+        """Show all commands by their names."""
+        if not isinstance(self.screen, CommandPalette):
+            self.push_screen(Commands(id="--command-palette"))
 
     def action_leave(self) -> None:
         """Leave; a desk asks first."""

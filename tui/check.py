@@ -3,7 +3,9 @@
 from __future__ import annotations
 
 import json
+import os
 import sys
+from io import TextIOWrapper
 from typing import Any
 
 from rich.box import SIMPLE_HEAD
@@ -38,14 +40,34 @@ def run_check(path: str, *, as_json: bool = False, cells: bool = False) -> int:
     except (ProjectError, summary.NotComputed) as error:
         print("\n".join(visible(line) for line in f"{_head(error, path)}{error}".splitlines()), file=sys.stderr)
         return UNUSABLE
+    if isinstance(sys.stdout, TextIOWrapper):
+        sys.stdout.reconfigure(errors="replace")  # a name that this encoding lacks is no reason to say nothing
     try:
         if as_json:
             print(json.dumps(report, ensure_ascii=True, allow_nan=False))
         else:
             _print(report, table)
+        if sys.stdout is not None:
+            sys.stdout.flush()
     except BrokenPipeError:
-        sys.stderr.close()  # the reader went away: nothing is left to say, and nobody to say it to
+        _write_nowhere()  # the reader went away: nothing is left to say, and nobody to say it to
+    except OSError as error:
+        _write_nowhere()
+        print(f"hexlipse: the output could not be written: {error.strerror}", file=sys.stderr)
+        return UNUSABLE
     return PASSES if report["passes"] and report["complete"] else FAILS
+
+
+class _Console(Console):
+    """A console that leaves a reader gone to `run_check`: Rich would end with status 1, which says that it fails."""
+
+    def on_broken_pipe(self) -> None:
+        raise BrokenPipeError
+
+
+def _write_nowhere() -> None:
+    """Keep the interpreter from writing what is left to the same place at its end."""
+    os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
 
 
 def _head(error: Exception, path: str) -> str:
@@ -53,9 +75,9 @@ def _head(error: Exception, path: str) -> str:
 
 
 def _print(report: dict[str, Any], table: MarginTable) -> None:
-    console = Console(highlight=False, markup=False, emoji=False)
+    console = _Console(highlight=False, markup=False, emoji=False)
     if not console.is_terminal:
-        console = Console(highlight=False, markup=False, emoji=False, width=PIPE_WIDTH)
+        console = _Console(highlight=False, markup=False, emoji=False, width=PIPE_WIDTH)
     width = console.width
     settings = table.project.settings
     revision = f"  rev {settings.revision}" if settings.revision else ""
@@ -115,9 +137,11 @@ def _points(report: dict[str, Any], lines: bool) -> Table:
     table = _plain_table(lines)
     table.add_column("point", overflow="fold")
     for head, justify in (("least", "right"), ("", "left"), ("in", "left"), ("limit", "left"), ("theory", "left")):
-        table.add_column(head, justify=justify, no_wrap=True)  # type: ignore[arg-type]
+        table.add_column(head, justify=justify, no_wrap=head != "in", overflow="fold")  # type: ignore[arg-type]
     for head in ("Tresca", "in", "von Mises", "in", "missing"):
-        table.add_column(head, justify="left" if head in {"in", "missing"} else "right", no_wrap=True)
+        table.add_column(
+            head, justify="left" if head in {"in", "missing"} else "right", no_wrap=head != "in", overflow="fold"
+        )
     for point in report["points"]:
         found, tresca, mises = point["governing"], point["tresca"], point["von-mises"]
         table.add_row(
@@ -164,8 +188,8 @@ def _print_grouped(console: Console, raised: list[tuple[str, dict[str, Any]]], w
 
 def _cells(cells: list[dict[str, Any]], lines: bool) -> Table:
     table = _plain_table(lines)
-    for head in ("point", "case", "limit"):
-        table.add_column(head, no_wrap=True)
+    for head in ("point", "case", "limit"):  # where there is no room names are folded, never numbers cut
+        table.add_column(head, no_wrap=head == "limit", overflow="fold")
     for head in ("Tresca", "margin", "von Mises", "margin"):
         table.add_column(head, justify="right", no_wrap=True)
     for cell in cells:

@@ -23,7 +23,7 @@ class Recent(Screen["Path | str | None"]):
     """Gives a path to open, "new" for a new project, or None to leave."""
 
     DEFAULT_CSS = """
-    Recent > Static { height: auto; padding: 1 2; }
+    Recent > #head { height: auto; padding: 1 2; }
     Recent > OptionList { height: 1fr; border: none; padding: 0 2; background: transparent; }
     """
     BINDINGS: ClassVar[list[BindingType]] = [
@@ -43,7 +43,7 @@ class Recent(Screen["Path | str | None"]):
             head.append_text(Text.assemble((f"\n  {key} ", "bold"), f"  {words}"))
         head.append("\n\n")
         head.append("Recent projects: arrows and Enter" if self._paths else "No project was opened here before.")
-        yield Static(head, markup=False)
+        yield Static(head, id="head", markup=False)
         options = [
             Option(Text(f"{visible(path.name):<30} {visible(str(path.parent))}"), id=str(i))
             for i, path in enumerate(self._paths)

@@ -156,7 +156,7 @@ def built(answers: dict[str, Plain]) -> Project:
 class Starter(Screen["Document | None"]):
     """Gives the new document, or None where it was given up."""
 
-    DEFAULT_CSS = "Starter > Static { height: 1fr; padding: 1 2; }"
+    DEFAULT_CSS = "Starter > #asked { height: 1fr; padding: 1 2; }"
     BINDINGS: ClassVar[list[BindingType]] = [
         Binding("ctrl+q", "leave", "leave", id="starter.leave", tooltip="Give the new project up"),
     ]
@@ -169,7 +169,7 @@ class Starter(Screen["Document | None"]):
         self._typed: list[str] = []
 
     def compose(self) -> ComposeResult:
-        yield Static("", markup=False)
+        yield Static("", id="asked", markup=False)
         yield EntryLine(self._palette)
 
     def on_mount(self) -> None:

@@ -340,6 +340,35 @@ def test_tension_follows_a_case_that_gets_its_data_while_a_material_changes() ->
     assert table.envelope.tension.tolist() == [0, 0]
 
 
+def test_tension_follows_a_required_factor_that_no_strength_shows() -> None:
+    rows = {name: [700.0, 0.0, 0.0, 0.0, 0.0, 0.0] for name in "ABC"}
+    before = project(
+        [point(name, rows) for name in "PQR"],
+        [case(name) for name in "ABC"],
+        categories=[category("normal", (1.0, 1.5))],
+        materials=[material(shear_yield=60.0)],
+    )
+    both = (Set("material", "steel", ("shear-yield",), 120.0), Set("category", "normal", ("yield", "tresca"), 2.0))
+    after = apply(before, Batch(both, "the same by Tresca"))
+    table = compute(before)
+    assert table.envelope.tension.tolist() == [0, 0, 0]
+    table = compute(after, table)
+    assert table.envelope.tension.tolist() == [3, 3, 3]
+
+
+def test_a_temperature_by_case_follows_a_case_to_another_column() -> None:
+    hot = material("hot", 300.0, yield_at=((20.0, 300.0), (120.0, 200.0)))
+    points = [point(f"P{i}", per_load={"a": axial(10.0)}, temperature={"C1": 120.0}, material="hot") for i in range(4)]
+    before = project(points, [case(f"C{i}", {"a": 9.0}) for i in range(6)], loads("a"), materials=[hot])
+    after = apply(before, Move("case", "C1", 2))
+    table = compute(before)
+    assert Patch.between(table, after) is not None
+    assert table.envelope.case[0].tolist() == [1] * 4
+    table = compute(after, table)
+    assert table.envelope.case[0].tolist() == [2] * 4
+    check(table, after)
+
+
 # Previews, and tables taken over
 
 

@@ -145,8 +145,9 @@ def test_a_magnitude_vanishes_beside_parts_at_any_depth() -> None:
         case("C", {"a": -0.3}),
         case("D", combine={"B": 1.0, "C": 1.0}),
         case("E", {"a": 1e-14}, {"B": 1.0, "C": 1.0}),
+        case("F", {"a": 1e-14}, {"D": 1.0}),  # the parts of D count, though it is zero
     )
-    assert (found["D"][0], found["E"][0]) == (0.0, 0.0)
+    assert (found["D"][0], found["E"][0], found["F"][0]) == (0.0, 0.0, 0.0)
 
 
 def test_a_small_load_of_a_case_that_combines_nothing_stands() -> None:
@@ -154,7 +155,8 @@ def test_a_small_load_of_a_case_that_combines_nothing_stands() -> None:
 
 
 def test_sizes_are_the_sums_of_the_sizes_of_the_parts() -> None:
-    sets = LoadSets(AB, [case("A", {"a": -2.0}), case("B", {"a": 1.0}, {"A": -3.0}), case("C", combine={"B": -2.0})])
+    sets = LoadSets(AB, [case("A", {"a": -2.0}), case("B", {"a": 1.0}, {"A": 3.0}), case("C", combine={"B": -2.0})])
+    assert sets.magnitudes[:, 0].tolist() == [-2.0, -5.0, 10.0]
     assert sets.sizes[:, 0].tolist() == [2.0, 7.0, 14.0]
 
 

@@ -44,10 +44,6 @@ def test_a_limit_that_no_case_asks_for_is_left_out(ultimate: float | None, limit
     assert rated(project(cases=[case("A")], categories=[category(ultimate=ultimate)])).limits == limits
 
 
-def test_without_checked_cases_no_limit_is_asked() -> None:
-    assert rated(project(cases=[case("A", check=False)], categories=[category(ultimate=2.0)])).limits == []
-
-
 OWN = [
     (None, [20.0, NAN, 120.0]),  # none of its own: the case's hold
     (70.0, [70.0, 70.0, 70.0]),  # a number: all of them

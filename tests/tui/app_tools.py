@@ -24,7 +24,7 @@ from tui.palette import Palette
 DEMO = Path(__file__).parents[2] / "projects" / "slipway-winch.toml"
 PATIENCE = 10.0
 """Seconds until a condition that never comes is a failure."""
-ROUNDS = 6
+ROUNDS = 4
 """A key goes from the application to the grid, over the screen and back: that often all queues are emptied."""
 
 
@@ -121,6 +121,11 @@ class Hand:
             assert monotonic() < deadline, f"{what or 'this'} did not come:\n{self.text}"
             await asyncio.sleep(0.005)
         await self.settle()
+
+    async def undo_all(self) -> None:
+        """Take every edit back by its key, and come to the first cell of the Margins sheet."""
+        await self.press(*"u" * len(self.document.history.done), "f2", "ctrl+home")
+        assert not self.document.dirty, self.text
 
     async def entry(self, *keys: str, text: str) -> None:
         """Press keys that open an entry, clear it, type a text and take it."""

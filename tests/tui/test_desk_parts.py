@@ -36,33 +36,38 @@ def names(hand: Hand, kind: Kind) -> tuple[str, ...]:
 # ---- adding
 
 
-@pytest.mark.parametrize(
-    ("keys", "answers", "kind", "place"),
-    [
-        (["f2", "down", "a"], ["P99"], "point", 2),  # after the one under the cursor
-        (["f2", "right", "A"], ["LC99"], "case", 2),
-        (["f3", "down", "a"], ["LC99"], "case", 2),
-        (["f3", "A"], ["wind", "N"], "load", 1),
-        (["f3", "end", "A"], ["boost", ""], "load", 6),  # behind the loads: at the end; a plain multiplier
-        (["f4", "a"], ["P99"], "point", 1),
-        (["f5", "a"], ["42CrMo4", "900"], "material", 1),
-        (["f6", "a"], ["A-A", "6 cm"], "section", 0),
-        (["f8", "a"], ["test", "1.05", "1.1"], "category", 1),
-        (["f10", "a"], ["wind", "kN/m*0"], "load", 1),
-    ],
-)
-async def test_a_part_is_asked_for_and_stands_after_the_one_under_the_cursor(
-    hand: Hand, keys: list[str], answers: list[str], kind: Kind, place: int
-) -> None:
-    await hand.press(*keys)
-    await hand.enter(*answers)
-    if hand.desk.line.typing:  # a unit that the project does not have is refused and typed again
-        assert "load of this project" in hand.message or "found" in hand.message
-        await hand.press("ctrl+u")
-        await hand.enter("N")
-    assert names(hand, kind)[place] == answers[0]
-    assert hand.message == f"add {kind} {answers[0]}"
-    assert hand.document.dirty
+ADDED: list[tuple[list[str], list[str], Kind, int]] = [
+    # keys, answers, kind, place of the new part
+    (["f2", "down", "a"], ["P99"], "point", 2),  # after the one under the cursor
+    (["f2", "right", "A"], ["LC99"], "case", 2),
+    (["f3", "down", "a"], ["LC99"], "case", 2),
+    (["f3", "ctrl+home", "A"], ["wind", "N"], "load", 1),
+    (["f3", "end", "A"], ["boost", ""], "load", 6),  # behind the loads: at the end; a plain multiplier
+    (["f4", "a"], ["P99"], "point", 1),
+    (["f5", "a"], ["42CrMo4", "900"], "material", 1),
+    (["f6", "a"], ["A-A", "6 cm"], "section", 0),
+    (["f8", "a"], ["test", "1.05", "1.1"], "category", 1),
+    (["f10", "a"], ["wind", "MPa"], "load", 1),
+]
+
+
+async def test_a_part_is_asked_for_and_stands_after_the_one_under_the_cursor(hand: Hand) -> None:
+    for keys, answers, kind, place in ADDED:
+        await hand.press(*keys)
+        await hand.enter(*answers)
+        assert names(hand, kind)[place] == answers[0], keys
+        assert hand.message == f"add {kind} {answers[0]}"
+        assert hand.document.dirty
+        await hand.undo_all()
+
+
+async def test_a_unit_that_the_project_does_not_have_is_refused_and_can_be_typed_again(hand: Hand) -> None:
+    await hand.press("f10", "a")
+    await hand.enter("wind", "kN")
+    assert "counts forces in N" in hand.message
+    await hand.press("ctrl+u")
+    await hand.enter("N")
+    assert hand.project.loads[1].unit == "N"
 
 
 async def test_the_cursor_goes_to_what_was_added(hand: Hand) -> None:
@@ -96,31 +101,25 @@ async def test_no_factor_of_a_new_category_is_assumed(hand: Hand) -> None:
     assert (found.yield_.tresca, found.yield_.von_mises, found.ultimate) == (1.1, 1.2, None)
 
 
-@pytest.mark.parametrize("answer", ["", "   ", "P02 shaft at bearing", " P02 shaft at bearing "])
-async def test_a_name_must_be_given_and_be_new(hand: Hand, answer: str) -> None:
-    await hand.press("a")
-    await hand.enter(answer)
-    assert hand.desk.line.typing
-    assert "name" in hand.message
-    await hand.press("escape")
-    assert not hand.desk.line.typing
+async def test_a_name_must_be_given_and_be_new(hand: Hand) -> None:
+    for answer in ("", "   ", "P02 shaft at bearing", " P02 shaft at bearing "):
+        await hand.press("a")
+        await hand.enter(answer)
+        assert hand.desk.line.typing
+        assert "name" in hand.message
+        await hand.press("escape")
+        assert not hand.desk.line.typing
     assert not hand.document.dirty
 
 
-@pytest.mark.parametrize(
-    ("keys", "says"),
-    [
-        (["a"], "a point needs a material, and there is none yet: F5, then a"),
-        (["A"], "a case needs a category, and there is none yet: F8, then a"),
-        (["f3", "a"], "a case needs a category, and there is none yet: F8, then a"),
-        (["f4", "a"], "a point needs a material, and there is none yet: F5, then a"),
-    ],
-)
-async def test_what_must_come_first_is_said(tmp_path: Path, keys: list[str], says: str) -> None:
+async def test_what_must_come_first_is_said(tmp_path: Path) -> None:
+    point = "a point needs a material, and there is none yet: F5, then a"
+    case = "a case needs a category, and there is none yet: F8, then a"
     async with opened(written(tmp_path, EMPTY)) as hand:
-        await hand.press(*keys)
-        assert hand.message == says
-        assert not hand.desk.line.typing
+        for keys, says in ((("f2", "a"), point), (("f2", "A"), case), (("f3", "a"), case), (("f4", "a"), point)):
+            await hand.press(*keys)
+            assert hand.message == says
+            assert not hand.desk.line.typing
 
 
 async def test_from_an_empty_project_to_a_margin_by_keys(tmp_path: Path) -> None:
@@ -144,9 +143,8 @@ async def test_from_an_empty_project_to_a_margin_by_keys(tmp_path: Path) -> None
 # ---- duplicating
 
 
-@pytest.mark.parametrize(
-    ("keys", "kind", "original"),
-    [
+async def test_a_duplicate_stands_after_its_original(hand: Hand) -> None:
+    for keys, kind, original in (
         (["d"], "point", "P01 shaft midspan"),
         (["D"], "case", "LC01"),
         (["f3", "d"], "case", "LC01"),
@@ -154,18 +152,12 @@ async def test_from_an_empty_project_to_a_margin_by_keys(tmp_path: Path) -> None
         (["f5", "d"], "material", "S275 100-150"),
         (["f8", "d"], "category", "normal"),
         (["f10", "d"], "load", "haul"),
-    ],
-)
-async def test_a_duplicate_stands_after_its_original_and_is_like_it(
-    hand: Hand, keys: list[str], kind: Kind, original: str
-) -> None:
-    await hand.press(*keys)
-    assert hand.desk.line.text == f"{original} copy"
-    await hand.press("enter")
-    assert names(hand, kind)[:2] == (original, f"{original} copy")
-    first, second = hand.project.of(kind)[:2]
-    if kind == "case":
-        assert (first.loads, first.category) == (second.loads, second.category)  # type: ignore[union-attr]
+    ):
+        await hand.press(*keys)
+        assert hand.desk.line.text == f"{original} copy"
+        await hand.press("enter")
+        assert names(hand, kind)[:2] == (original, f"{original} copy"), keys
+        await hand.undo_all()
 
 
 async def test_a_duplicated_case_takes_the_stress_rows_of_its_original_along(hand: Hand) -> None:
@@ -188,9 +180,9 @@ async def test_a_duplicate_needs_a_name_of_its_own(hand: Hand) -> None:
 # ---- renaming
 
 
-@pytest.mark.parametrize(
-    ("keys", "kind"),
-    [
+async def test_a_part_is_renamed_everywhere_and_no_number_changes(hand: Hand) -> None:
+    before = hand.document.table.values.copy()
+    for keys, kind in (
         (["r"], "point"),
         (["R"], "case"),
         (["f3", "r"], "case"),
@@ -198,16 +190,15 @@ async def test_a_duplicate_needs_a_name_of_its_own(hand: Hand) -> None:
         (["f5", "r"], "material"),
         (["f8", "r"], "category"),
         (["f10", "r"], "load"),
-    ],
-)
-async def test_a_part_is_renamed_everywhere_and_no_number_changes(hand: Hand, keys: list[str], kind: Kind) -> None:
-    old, before = names(hand, kind)[0], hand.document.table.values.copy()
-    await hand.press(*keys, "ctrl+u")
-    await hand.enter("new name")
-    assert names(hand, kind)[0] == "new name"
-    assert hand.message == f"rename {kind} {old} -> new name"
-    assert f'"{old}"' not in store.render(hand.project)
-    np.testing.assert_array_equal(hand.document.table.values, before)
+    ):
+        old = names(hand, kind)[0]
+        await hand.press(*keys, "ctrl+u")
+        await hand.enter("new name")
+        assert names(hand, kind)[0] == "new name"
+        assert hand.message == f"rename {kind} {old} -> new name"
+        assert f'"{old}"' not in store.render(hand.project)
+        np.testing.assert_array_equal(hand.document.table.values, before)
+        await hand.undo_all()
 
 
 async def test_renaming_to_the_same_name_is_no_edit_and_to_a_taken_one_is_refused(hand: Hand) -> None:
@@ -234,37 +225,32 @@ async def test_a_point_is_deleted_at_once_and_comes_back_by_undo(hand: Hand) -> 
     assert hand.row("P02").split()[4] == "-0.04"
 
 
-@pytest.mark.parametrize(
-    ("keys", "kind", "name", "reference"),
-    [
-        (["X"], "case", "LC01", "case LC15 (combine)"),
+async def test_where_others_refer_to_a_part_its_deletion_is_asked_about(hand: Hand) -> None:
+    for keys, kind, name, reference in (
+        (["f2", "X"], "case", "LC01", "case LC15 (combine)"),
         (["f3", "X"], "load", "haul", "case LC02 (loads)"),
         (["f3", "x"], "case", "LC01", "point P12 bed anchor FE (stress)"),
         (["f10", "x"], "load", "haul", "case LC01 (loads)"),
-    ],
-)
-async def test_where_others_refer_to_a_part_its_deletion_is_asked_about(
-    hand: Hand, keys: list[str], kind: Kind, name: str, reference: str
-) -> None:
-    await hand.press(*keys)
-    assert isinstance(hand.app.screen, Question)
-    assert f"{kind} {name} is referred to by" in hand.text
-    assert reference in hand.text
-    await hand.press("escape")
-    assert isinstance(hand.app.screen, Desk)
-    assert name in names(hand, kind)
-    assert not hand.document.dirty
-    await hand.press(keys[-1])
-    await hand.press("y")
-    assert name not in names(hand, kind)
+    ):
+        await hand.press(*keys)
+        assert isinstance(hand.app.screen, Question)
+        assert f"{kind} {name} is referred to by" in hand.text
+        assert reference in hand.text
+        await hand.press("escape")
+        assert isinstance(hand.app.screen, Desk)
+        assert not hand.document.dirty
+        await hand.press(keys[-1])
+        await hand.press("y")
+        assert name not in names(hand, kind)
+        await hand.undo_all()
 
 
-@pytest.mark.parametrize(("keys", "kind"), [(["f5", "x"], "material"), (["f8", "x"], "category")])
-async def test_what_is_needed_is_not_deleted_and_it_is_said_by_whom(hand: Hand, keys: list[str], kind: Kind) -> None:
-    name = names(hand, kind)[0]
-    await hand.press(*keys)
-    assert hand.message.startswith(f"{kind} {name} is used by")
-    assert names(hand, kind)[0] == name
+async def test_what_is_needed_is_not_deleted_and_it_is_said_by_whom(hand: Hand) -> None:
+    for sheet, kind in (("f5", "material"), ("f8", "category")):
+        name = names(hand, kind)[0]
+        await hand.press(sheet, "x")
+        assert hand.message.startswith(f"{kind} {name} is used by")
+        assert names(hand, kind)[0] == name
 
 
 async def test_a_held_key_answers_one_question_only(hand: Hand) -> None:
@@ -288,44 +274,47 @@ async def test_on_a_points_rows_x_takes_the_row_away(tmp_path: Path) -> None:
 # ---- moving
 
 
-@pytest.mark.parametrize(
-    ("keys", "kind", "order"),
-    [
-        (["down", "ctrl+up"], "point", [1, 0, 2]),
-        (["ctrl+down"], "point", [1, 0, 2]),
-        (["ctrl+right"], "case", [1, 0, 2]),
-        (["right", "right", "ctrl+left"], "case", [0, 2, 1]),
-        (["f3", "ctrl+down"], "case", [1, 0, 2]),
-        (["f3", "ctrl+right"], "load", [1, 0, 2]),
-        (["f5", "ctrl+down", "ctrl+down"], "material", [1, 2, 0]),
-        (["f8", "down", "ctrl+up"], "category", [1, 0, 2]),
-    ],
-)
-async def test_a_part_moves_and_the_cursor_with_it(hand: Hand, keys: list[str], kind: Kind, order: list[int]) -> None:
-    before = names(hand, kind)
-    await hand.press(*keys)
-    assert names(hand, kind)[:3] == tuple(before[i] for i in order)
-    assert hand.message.startswith(f"move {kind} ")
-    moved = hand.message.removeprefix(f"move {kind} ").split(" to place")[0]
-    place = hand.desk.grid.cursor["ctrl+left" in keys or "ctrl+right" in keys]
-    assert names(hand, kind)[place] == moved
+MOVED: list[tuple[list[str], Kind, list[int]]] = [
+    # keys, kind, the first three places before
+    (["down", "ctrl+up"], "point", [1, 0, 2]),
+    (["ctrl+down"], "point", [1, 0, 2]),
+    (["ctrl+right"], "case", [1, 0, 2]),
+    (["right", "right", "ctrl+left"], "case", [0, 2, 1]),
+    (["f3", "ctrl+home", "ctrl+down"], "case", [1, 0, 2]),
+    (["f3", "ctrl+home", "ctrl+right"], "load", [1, 0, 2]),
+    (["f5", "ctrl+down", "ctrl+down"], "material", [1, 2, 0]),
+    (["f8", "down", "ctrl+up"], "category", [1, 0, 2]),
+]
 
 
-@pytest.mark.parametrize("keys", [["ctrl+up"], ["ctrl+left"], ["ctrl+end", "ctrl+down"], ["ctrl+end", "ctrl+right"]])
-async def test_at_the_end_nothing_moves(hand: Hand, keys: list[str]) -> None:
-    await hand.press(*keys)
-    assert hand.message == "it stands at the end already"
+async def test_a_part_moves_and_the_cursor_with_it(hand: Hand) -> None:
+    for keys, kind, order in MOVED:
+        before = names(hand, kind)
+        await hand.press(*keys)
+        assert names(hand, kind)[:3] == tuple(before[i] for i in order), keys
+        assert hand.message.startswith(f"move {kind} ")
+        moved = hand.message.removeprefix(f"move {kind} ").split(" to place")[0]
+        place = hand.desk.grid.cursor["ctrl+left" in keys or "ctrl+right" in keys]
+        assert names(hand, kind)[place] == moved
+        await hand.undo_all()
+
+
+async def test_at_the_end_nothing_moves(hand: Hand) -> None:
+    for keys in (["ctrl+up"], ["ctrl+left"], ["ctrl+end", "ctrl+down"], ["ctrl+right"]):
+        await hand.press("escape", *keys)
+        assert hand.message == "it stands at the end already", keys
     assert not hand.document.dirty
 
 
 # ---- where a row or a column is no part
 
 
-@pytest.mark.parametrize("sheet", ["f7", "f9"])
-@pytest.mark.parametrize("key", ["a", "d", "r", "x", "ctrl+up", "A", "D", "R", "X", "ctrl+left"])
-async def test_where_rows_or_columns_are_no_parts_it_is_said(hand: Hand, sheet: str, key: str) -> None:
-    await hand.press(sheet, key)
-    assert "is not a part of its own" in hand.message
+async def test_where_rows_or_columns_are_no_parts_it_is_said(hand: Hand) -> None:
+    for sheet in ("f7", "f9"):
+        await hand.press(sheet)
+        for key in ("a", "d", "r", "x", "ctrl+up", "A", "D", "R", "X", "ctrl+left"):
+            await hand.press("escape", key)
+            assert "is not a part of its own" in hand.message, (sheet, key)
     assert not hand.document.dirty
 
 
