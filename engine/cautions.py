@@ -203,7 +203,7 @@ def _text(table: MarginTable, row: int, name: str) -> str:
 def _tension_text(table: MarginTable, row: int) -> str:
     rating = table.rating
     column, case = _first(table, table.hydrostatic[row])
-    total = float(table.stress(row, column)[:3].sum()) * float(rating.factor[0, row])
+    total = sum(table.stress(row, column).tolist()[:3]) * float(rating.factor[0, row])
     factor = float(np.fmax(*rating.required[0, :, column]))
     strength = float(rating.strength[0, 1, rating.of_point[row], column])
     return f"sum of principals {total:.1f} in {case} is above 4 x {number_text(strength)} / {number_text(factor)}"

@@ -185,7 +185,7 @@ class Patch:
         for start in range(0, len(self._rated), max(1, 65536 // cases)):
             run = slice(start, start + max(1, 65536 // cases))
             rows = self._rated[run]
-            values = self._rated_values(rows)
+            values = table.values[:, rows]
             after = slice(len(self._rows) + start, len(self._rows) + start + len(rows))
             self._whole(rows, values, self._rated_hydrostatic[run], after)
 
@@ -195,15 +195,6 @@ class Patch:
         trace = table.influence.trace(self._rated, self.sets, table.of_case)
         flags = hydrostatic_flags(trace, self.rating, self._rated, slice(None))
         self._rated_hydrostatic = flags & ~np.isnan(table.values[1][self._rated])
-
-    def _rated_values(self, rows: Places) -> Array:
-        """Equivalents of whole rows whose strengths changed; columns that changed too are computed for them."""
-        table = self._base
-        values: Array = table.values[:, rows]
-        if len(self._columns):
-            new = equivalents_of(table.influence, self.sets, self.rating, rows, self._columns, table.of_case, rows)
-            values[:, :, self._columns] = new.values
-        return values
 
     def _whole(self, rows: Places, values: Array, hydrostatic: Flags, place: slice) -> None:
         _, cases = self._base.shape
@@ -240,18 +231,11 @@ class Patch:
             hydrostatic[at, self._columns] = self._column_hydrostatic
             least[:, :, at, self._groups] = self._group_least
         if len(self._rated):
-            self._apply_rated(table)
+            hydrostatic[self._rated] = self._rated_hydrostatic
+            least[:, :, self._rated] = self._row_least[:, :, len(self._rows) :]
         if len(self._rows):
             table.influence.assign(self._rows, self._influence)
             values[:, self._rows] = self._row_values
             hydrostatic[self._rows] = self._row_hydrostatic
             least[:, :, self._rows] = self._row_least[:, :, : len(self._rows)]
         return table
-
-    def _apply_rated(self, table: MarginTable) -> None:
-        if len(self._columns):
-            rows = self._rated
-            new = equivalents_of(table.influence, self.sets, self.rating, rows, self._columns, table.of_case, rows)
-            table.values[:, rows[:, None], self._columns] = new.values
-        table.hydrostatic[self._rated] = self._rated_hydrostatic
-        table.group_least[:, :, self._rated] = self._row_least[:, :, len(self._rows) :]

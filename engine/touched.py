@@ -9,7 +9,9 @@ from typing import Any
 
 import numpy as np
 
+from engine.cells import Flags
 from engine.envelope import Places
+from engine.frozen import Array
 from engine.loads import Case, LoadSets
 from engine.project import Project
 from engine.rating import Rating
@@ -56,6 +58,9 @@ def between(table: MarginTable, new: Project) -> Touched | None:
         rated, more = _rated(table.rating, rating)
         columns = np.union1d(columns, more)
         rated = np.setdiff1d(rated, rows)
+    if len(columns) and len(rated):  # a step that does both is rare, and its rows are as well computed whole
+        rows = sorted({*rows, *rated.tolist()})
+        rated = np.empty(0, dtype=np.intp)
     points, checked = table.shape
     if len(rows) * 2 > points or len(columns) * 2 > checked:
         return None
@@ -122,9 +127,8 @@ def _rated(old: Rating, new: Rating) -> tuple[Places, Places]:
     differ = np.zeros((pairs.shape[1], old.asked.shape[1]), dtype=bool)
     for i, (a, b) in enumerate(pairs.T):
         for before, after in ((old.allowable, new.allowable), (old.strength, new.strength)):
-            x, y = before[:, :, a], after[:, :, b]
-            differ[i] |= ~((x == y) | (np.isnan(x) & np.isnan(y))).all(axis=(0, 1))
-    differ |= np.logical_xor(old.asked, new.asked).any(axis=0)
+            differ[i] |= _unlike(before[:, :, a], after[:, :, b])
+    differ |= _unlike(old.required, new.required)  # hydrostatic tension reads it beside the strength
     columns: Places = np.flatnonzero(differ.any(axis=0))
     if len(columns) * FEW <= differ.shape[1]:
         differ[:, columns] = False
@@ -133,3 +137,8 @@ def _rated(old: Rating, new: Rating) -> tuple[Places, Places]:
     factors = np.not_equal(old.factor, new.factor).any(axis=0)
     of_pair = np.asarray(differ.any(axis=1))
     return np.flatnonzero(of_pair[which.reshape(-1)] | factors), columns
+
+
+def _unlike(old: Array, new: Array) -> Flags:
+    """(cases,): whether the numbers of a case differ, NaN being like NaN. old, new: (2, 2, cases)."""
+    return np.asarray(~((old == new) | (np.isnan(old) & np.isnan(new))).all(axis=(0, 1)))

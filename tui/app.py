@@ -23,6 +23,7 @@ from .ascii_filter import AsciiFilter
 from .desk import Desk
 from .dialogs import Page, Question
 from .document import Document
+from .entry_line import EntryLine
 from .file_actions import error_text
 from .palette import Palette
 from .recent import Recent
@@ -40,22 +41,30 @@ FIRST_WORDS = (
 class DeskCommands(Provider):
     """The palette of all commands, by a plain name."""
 
+    _ran = False
+
     def _commands(self) -> Iterable[tuple[str, str, str]]:
         screen = self.screen
         for binding in type(screen).BINDINGS:
             if isinstance(binding, Binding):
                 yield binding.description, binding.tooltip, binding.action
 
+    async def _run(self, action: str) -> None:
+        """Run one command, however often Enter comes before the palette is gone."""
+        if not self._ran:
+            self._ran = True
+            await self.screen.run_action(action)
+
     async def discover(self) -> Hits:
         for name, text, action in self._commands():
-            yield DiscoveryHit(name, partial(self.screen.run_action, action), help=text)
+            yield DiscoveryHit(name, partial(self._run, action), help=text)
 
     async def search(self, query: str) -> Hits:
         matcher = self.matcher(query)
         for name, text, action in self._commands():
             score = max(matcher.match(name), matcher.match(text))
             if score > 0:
-                yield Hit(score, matcher.highlight(name), partial(self.screen.run_action, action), help=text)
+                yield Hit(score, matcher.highlight(name), partial(self._run, action), help=text)
 
 
 class Commands(CommandPalette):
@@ -180,8 +189,9 @@ class HexlipseApp(App[None]):
             event.stop()
 
     def action_command_palette(self) -> None:
-        """Show all commands by their names."""
-        if not isinstance(self.screen, CommandPalette):
+        """Show all commands by their names; not over an open entry, whose cell a command could take away."""
+        typing = any(line.typing for line in self.screen.query(EntryLine))
+        if not typing and not isinstance(self.screen, CommandPalette):
             self.push_screen(Commands(id="--command-palette"))
 
     def action_leave(self) -> None:

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
+from functools import partial
 from typing import ClassVar
 
 from rich.text import Text
@@ -357,28 +359,32 @@ class Desk(PartActions, FileActions, TakeOnActions, Screen[None]):
     def _ask(self, initial: str) -> None:
         row, column = self.grid.cursor
         sheet = self.sheet
+        place = sheet.at(row, column)
+
+        def read(text: str) -> Edit | None:
+            if sheet.at(row, column) != place:  # a computation that ended meanwhile took rows away or moved them
+                raise Refusal("this cell has moved since: esc, then type it again")
+            return sheet.edit(row, column, text)
 
         def submit(text: str) -> str | None:
             try:
-                edit = sheet.edit(row, column, text)
+                edit = read(text)
             except SHOWN_REFUSALS as error:
                 return str(error)
             return None if edit is None else self.commit(edit)
 
-        def change(text: str) -> None:
-            self._look_ahead(sheet, row, column, text)
-
+        look_ahead = partial(self._look_ahead, read)
         prompt = sheet.prompt(row, column)
-        self.line.ask(Request(prompt, initial, submit, change, self._show_refusal, self._entry_over))
+        self.line.ask(Request(prompt, initial, submit, look_ahead, self._show_refusal, self._entry_over))
 
     def _show_refusal(self, why: str) -> None:
         self._not_taken = why
         self.refresh_texts()
 
-    def _look_ahead(self, sheet: WorkSheet, row: int, column: int, text: str) -> None:
+    def _look_ahead(self, read: Callable[[str], Edit | None], text: str) -> None:
         """While typing, the summary shows what the margins would become; an entry not yet readable shows what is."""
         try:
-            edit = sheet.edit(row, column, text)
+            edit = read(text)
             self._ahead = self.document.preview(edit) if edit is not None else self.document.state
         except SHOWN_REFUSALS:
             self._ahead = None

@@ -97,6 +97,11 @@ class WorkSheet:
         """Name of a column's part."""
         return ""
 
+    def at(self, row: int, column: int) -> tuple[str, str] | None:
+        """Names of the row and the column of a cell; None where there is no such cell (any more)."""
+        rows, columns = (0, 0) if self.gone else self.size()
+        return (self.row_name(row), self.column_name(column)) if row < rows and column < columns else None
+
     def row_called(self, name: str) -> int:
         """Row of a name; -1 where there is none."""
         rows, _ = self.size()
