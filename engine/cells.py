@@ -125,10 +125,19 @@ def group_least(margins: Array) -> Array:
 
 
 def least_of(values: Array, rating: Rating, rows: Places) -> Array:
-    """(2 limits, 2 theories, rows, groups): least margins of whole rows of equivalents (2, rows, all columns)."""
+    """(2 limits, 2 theories, rows, groups): least margins of whole rows of equivalents (2, rows, all columns).
+
+    The point factor is the same all along a row, so it comes in after the least of each group is found.
+    """
     found = np.full((2, 2, len(rows), groups_of(values.shape[2])), np.nan)
-    for limit in rating.limits:
-        found[limit] = group_least(margins_of(values, rating, rows, slice(None), limit))
+    classes = rating.of_point[rows]
+    with np.errstate(divide="ignore", over="ignore", invalid="ignore"):
+        for limit in rating.limits:
+            for theory in range(2):
+                ratio = rating.allowable[limit, theory].take(classes, axis=0)
+                np.divide(ratio, values[theory], out=ratio)
+                np.divide(group_least(ratio), rating.factor[limit, rows][:, None], out=found[limit, theory])
+    found -= 1.0
     return found
 
 
@@ -165,16 +174,18 @@ def govern(
         first = np.argmax(candidate, axis=1)
         columns = np.minimum(first[:, None] * GROUP + np.arange(GROUP), cases - 1)
         equivalent = values(theory, rows, columns)
-        within = np.empty((2, *columns.shape), dtype=bool)
-        for limit in range(2):
-            allowable = rating.allowable[limit, theory][rating.of_point[rows][:, None], columns]
+        within = np.zeros((2, *columns.shape), dtype=bool)
+        at = rating.of_point[rows][:, None] * cases + columns
+        for limit in rating.limits:
+            allowable = rating.allowable[limit, theory].reshape(-1).take(at)
             with np.errstate(divide="ignore", over="ignore", invalid="ignore"):
-                within[limit] = allowable / (equivalent * rating.factor[limit, rows][:, None]) - 1.0 <= bound[:, None]
+                margins = allowable / (equivalent * rating.factor[limit, rows][:, None]) - 1.0
+                np.less_equal(margins, bound[:, None], out=within[limit])
         place = np.argmax(within[0] | within[1], axis=1)
-        at = np.arange(len(rows))
+        row = np.arange(len(rows))
         known = ~np.isnan(found.least[theory])
-        found.case[theory] = np.where(known, columns[at, place], -1)
-        found.limit[theory] = np.where(known & ~within[0, at, place], 1, 0)
+        found.case[theory] = np.where(known, columns[row, place], -1)
+        found.limit[theory] = np.where(known & ~within[0, row, place], 1, 0)
     return found
 
 

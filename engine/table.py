@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Mapping
+from typing import TypeVar
 
 import numpy as np
 
@@ -23,6 +24,8 @@ from engine.loads import LoadSets
 from engine.material import LIMITS, THEORIES, Limit, Theory
 from engine.project import Project
 from engine.rating import Rating
+
+T = TypeVar("T")
 
 
 class ByTheory(Mapping[Theory, Array]):
@@ -89,13 +92,13 @@ class MarginTable:
         points, cases = len(project.points), len(self.of_case)
         self._values: Array | None = np.empty((2, points, cases))
         self._hydrostatic: Flags | None = np.zeros((points, cases), dtype=bool)
-        self._least: Array = np.full((2, 2, points, groups_of(cases)), np.nan)
+        self._least: Array | None = np.full((2, 2, points, groups_of(cases)), np.nan)
         self._fill()
 
     def _fill(self) -> None:
         points, cases = self.shape
         columns = np.arange(cases)
-        values, hydrostatic = self.values, self.hydrostatic
+        values, hydrostatic, groups = self.values, self.hydrostatic, self.group_least
         missing, tension = np.zeros(points, dtype=np.intp), np.zeros(points, dtype=np.intp)
         least, case, limit = (
             np.full((2, points), np.nan),
@@ -107,10 +110,10 @@ class MarginTable:
             run = slice(rows[0], rows[-1] + 1)
             found = equivalents_of(self.influence, self.sets, self.rating, rows, columns, self.of_case, run)
             values[:, run], hydrostatic[run] = found.values, found.hydrostatic
-            self._least[:, :, run] = least_of(found.values, self.rating, rows)
+            groups[:, :, run] = least_of(found.values, self.rating, rows)
             missing[run] = missing_of(found.values, self.rating, rows, columns).sum(axis=1)
             tension[run] = found.hydrostatic.sum(axis=1)
-            governed = govern(self.equivalents_at, self._least[:, :, run], self.rating, rows, cases)
+            governed = govern(self.equivalents_at, groups[:, :, run], self.rating, rows, cases)
             least[:, run], case[:, run], limit[:, run] = governed.least, governed.case, governed.limit
 
         if points and cases:
@@ -126,21 +129,24 @@ class MarginTable:
     @property
     def values(self) -> Array:
         """(2, points, cases): equivalents by theory, all factors excluded. Not to be written."""
-        if self._values is None:
-            raise RuntimeError("this table's arrays were taken over by a later one")
-        return self._values
+        return self._own(self._values)
 
     @property
     def hydrostatic(self) -> Flags:
         """(points, cases): cells under hydrostatic tension beyond what yield margins can vouch for."""
-        if self._hydrostatic is None:
-            raise RuntimeError("this table's arrays were taken over by a later one")
-        return self._hydrostatic
+        return self._own(self._hydrostatic)
 
     @property
     def group_least(self) -> Array:
         """(2 limits, 2 theories, points, groups of cases): least margins, NaN where none is known."""
-        return self._least
+        return self._own(self._least)
+
+    @staticmethod
+    def _own(array: T | None) -> T:
+        """An array that this table still has."""
+        if array is None:
+            raise RuntimeError("this table's arrays were taken over by a later one")
+        return array
 
     @property
     def margin(self) -> Mapping[Limit, Mapping[Theory, Array]]:
@@ -166,19 +172,20 @@ class MarginTable:
 
     def stress(self, row: int, column: int) -> Array:
         """(6,) stress of a cell, point and concentration factors excluded; NaN where not known."""
+        self._own(self._values)  # the influence goes with the arrays
         found: Array = self.influence.stress(np.array([row]), self.sets, self.of_case[[column]])[:, 0, 0]
         return found
 
     def equivalents_at(self, theory: int, rows: Places, columns: Places) -> Array:
         """Equivalents of cells by their places; rows (n,), columns (n, k); returns (n, k)."""
-        found: Array = self.values[theory][rows[:, None], columns]
+        found: Array = self.values[theory].reshape(-1).take(rows[:, None] * len(self.of_case) + columns)
         return found
 
     def successor(self, project: Project, sets: LoadSets, rating: Rating, envelope: Envelope) -> MarginTable:
         """A table with this one's arrays, for the caller to change; this one cannot be read afterwards."""
         new = object.__new__(MarginTable)
-        new._values, new._hydrostatic, new._least = self.values, self.hydrostatic, self._least
-        self._values = self._hydrostatic = None
+        new._values, new._hydrostatic, new._least = self.values, self.hydrostatic, self.group_least
+        self._values = self._hydrostatic = self._least = None
         new.influence, new.of_case = self.influence, self.of_case
         new.project, new.sets, new.rating, new.envelope = project, sets, rating, envelope
         return new

@@ -274,6 +274,15 @@ async def test_a_command_of_the_palette_does_what_its_key_does(hand: Hand) -> No
     await hand.until(lambda: hand.desk.grid.cursor == (10, 6), "the governing cell")
 
 
+async def test_enter_held_in_the_palette_runs_a_command_once(hand: Hand) -> None:
+    await hand.press("ctrl+p")
+    await hand.type("delete")
+    await hand.until(lambda: "Delete the row's part" in hand.text, "the command")
+    await hand.press("enter", "enter", "enter")
+    await hand.until(lambda: hand.message == "delete point P01 shaft midspan", "the deletion")
+    assert len(hand.document.history.done) == 1
+
+
 async def test_escape_leaves_the_palette(hand: Hand) -> None:
     await hand.press("ctrl+p")
     await hand.until(lambda: "Search" in hand.text, "the palette")

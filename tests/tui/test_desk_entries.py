@@ -7,6 +7,8 @@ from pathlib import Path
 
 import pytest
 
+from engine.removal import removal
+
 from .app_tools import Hand, demo_copy, opened, written
 from .small_projects import NO_STRESS
 
@@ -107,6 +109,31 @@ async def test_no_command_gets_past_an_open_entry(hand: Hand) -> None:
     assert hand.desk.line.text == "123"
     assert hand.desk.sheet.key == "loads"
     assert hand.desk.grid.cursor == (0, 0)
+
+
+async def test_the_palette_does_not_open_over_an_entry(hand: Hand) -> None:
+    await hand.press("f3", *"12", "ctrl+p", *"3")
+    assert hand.desk.line.text == "123"
+
+
+async def test_an_entry_whose_cell_has_moved_meanwhile_goes_nowhere(hand: Hand) -> None:
+    await hand.press("f3", *["down"] * 8, *"60000")
+    hand.document.commit(removal(hand.project, "case", "LC03"))  # as a long computation that ends now would
+    hand.desk.refresh_all(structure=True)
+    await hand.press("enter")
+    assert hand.message == "this cell has moved since: esc, then type it again"
+    await hand.press("backspace")
+    assert [case.loads.get("haul") for case in hand.project.cases[7:9]] == [75000.0, 60000.0]
+    await hand.press("escape", *"61000", "enter")
+    assert hand.project.cases[hand.desk.grid.cursor[0]].loads["haul"] == 61000.0
+
+
+async def test_an_entry_whose_cell_is_gone_goes_nowhere(hand: Hand) -> None:
+    await hand.press("f3", "ctrl+end", "home", *"60")
+    hand.document.commit(removal(hand.project, "case", "LC18"))
+    hand.desk.refresh_all(structure=True)
+    await hand.press(*"000", "enter")
+    assert "has moved" in hand.message
 
 
 async def test_a_click_elsewhere_does_not_change_where_an_entry_goes(hand: Hand) -> None:
