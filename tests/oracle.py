@@ -53,7 +53,7 @@ def report(source: Path | str) -> Table:
     """The object that `check --json --cells` prints for a valid file.
 
     source: a path, or the text itself (a string with a line break is taken for text).
-    Raises NotImplementedError for sections and loads whose sense is not fixed.
+    Raises ValueError for sections and loads whose sense is not fixed.
     """
     project = read(source)
     cells = [cell for point in listed(project, "point") for cell in cells_of(project, point)]
@@ -81,7 +81,7 @@ def read(source: Path | str) -> Table:
         raise ValueError("not format 1")
     moving = [load["name"] for load in listed(project, "load") if load.get("sense", "fixed") != "fixed"]
     if moving or project.get("section") or any("section" in point for point in listed(project, "point")):
-        raise NotImplementedError("sections and reversible or optional loads are not computed here")
+        raise ValueError("sections and reversible or optional loads are not computed here")
     return project
 
 

@@ -12,6 +12,7 @@ from typing import ClassVar
 from rich.text import Text
 from textual import events
 from textual.app import App
+from textual.await_complete import AwaitComplete
 from textual.binding import Binding, BindingType
 from textual.command import CommandPalette, DiscoveryHit, Hit, Hits, Provider
 from textual.filter import LineFilter
@@ -74,11 +75,16 @@ class Commands(CommandPalette):
         with suppress(KeyError):
             super()._action_command_list(action)
 
+    def dismiss(self, result: None = None) -> AwaitComplete:
+        """Close, once: Enter held would close the desk below too."""
+        return super().dismiss(result) if self.is_current else AwaitComplete()
+
 
 class HexlipseApp(App[None]):
     """The program on the screen."""
 
     TITLE = "Hexlipse"
+    ENABLE_COMMAND_PALETTE = False  # by a binding of the desk, which comes in the order typed; the stock one overtakes
     COMMANDS: ClassVar = {DeskCommands}
     BINDINGS: ClassVar[list[BindingType]] = [
         Binding("ctrl+q", "leave", "leave", show=False, id="app.leave", tooltip="Leave the program"),

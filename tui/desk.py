@@ -96,6 +96,7 @@ class Desk(PartActions, FileActions, TakeOnActions, Screen[None]):
         _key("ctrl+r", "reload", "read again", "Read the file again"),
         _key("ctrl+q", "leave", "leave", "Leave; asks while edits are unsaved"),
         _key("ctrl+z", "app.suspend_process", "suspend", "To the shell; fg comes back"),
+        _key("ctrl+p", "app.command_palette", "commands", "All commands by their names"),
         _key("question_mark,f1", "help", "keys", "This page"),
         _key("escape", "quiet", "quiet", "Clear the message; back to the Margins sheet from a point's rows"),
     ]

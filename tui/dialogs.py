@@ -84,7 +84,8 @@ class Page(ModalScreen[None]):
 
     def action_scroll(self, lines: int) -> None:
         """Move the text."""
-        self.query_one(VerticalScroll).scroll_relative(y=lines, animate=False, immediate=True)
+        for area in self.query(VerticalScroll):  # none while the page is still being made
+            area.scroll_relative(y=lines, animate=False, immediate=True)
 
     def action_close(self) -> None:
         """Close the page."""
