@@ -17,10 +17,10 @@ from engine.influence import Influence
 from engine.loads import LoadSets
 from engine.rating import Rating
 
-GROUP = 32
+GROUP = 16
 """Cases to a group of least margins: a relieved case is governed again from its group and the other groups' least."""
-BLOCK = 32768
-"""Cells computed at a time, so that the kernel's buffers stay in cache."""
+BLOCK = 65536
+"""Cells computed at a time: few enough for little memory, enough that two threads seldom wait for the interpreter."""
 PARALLEL = 100_000
 """Cells from which a second thread pays."""
 Rows = slice | Places
@@ -124,8 +124,8 @@ def group_least(margins: Array) -> Array:
     return least
 
 
-def least_of(values: Array, rating: Rating, rows: Places) -> Array:
-    """(2 limits, 2 theories, rows, groups): least margins of whole rows of equivalents (2, rows, all columns).
+def least_of(values: Array, rating: Rating, rows: Places, columns: slice = slice(None)) -> Array:
+    """(2 limits, 2 theories, rows, groups): least margins of equivalents (2, rows, columns), whole groups of columns.
 
     The point factor is the same all along a row, so it comes in after the least of each group is found.
     """
@@ -134,7 +134,7 @@ def least_of(values: Array, rating: Rating, rows: Places) -> Array:
     with np.errstate(divide="ignore", over="ignore", invalid="ignore"):
         for limit in rating.limits:
             for theory in range(2):
-                ratio = rating.allowable[limit, theory].take(classes, axis=0)
+                ratio = rating.allowable[limit, theory][:, columns].take(classes, axis=0)
                 np.divide(ratio, values[theory], out=ratio)
                 np.divide(group_least(ratio), rating.factor[limit, rows][:, None], out=found[limit, theory])
     found -= 1.0
@@ -166,12 +166,12 @@ def govern(
     )
     if not cases or not len(rows):
         return found
-    found.least = np.fmin.reduce(np.fmin.reduce(least, axis=0), axis=-1)
+    of_group = np.fmin(least[0], least[1])
+    found.least = np.fmin.reduce(of_group, axis=-1)
     for theory in range(2):
         bound = found.least[theory] + TOLERANCE
         with np.errstate(invalid="ignore"):
-            candidate = (least[0, theory] <= bound[:, None]) | (least[1, theory] <= bound[:, None])
-        first = np.argmax(candidate, axis=1)
+            first = np.argmax(of_group[theory] <= bound[:, None], axis=1)
         columns = np.minimum(first[:, None] * GROUP + np.arange(GROUP), cases - 1)
         equivalent = values(theory, rows, columns)
         within = np.zeros((2, *columns.shape), dtype=bool)

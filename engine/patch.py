@@ -138,15 +138,12 @@ class Patch:
     def _group_again(self, rows: Places, local: Places, group: int) -> Array:
         """(2 limits, 2 theories, rows): least margins of one group, read from its cells."""
         _, cases = self._base.shape
-        columns = np.arange(group * GROUP, min((group + 1) * GROUP, cases))
-        values = self._base.values[:, rows, columns[0] : columns[-1] + 1]
+        columns = slice(group * GROUP, min((group + 1) * GROUP, cases))
+        values = self._base.values[:, :, columns].take(rows, axis=1)
         for i, column in enumerate(self._columns):
             if column // GROUP == group:
-                values[:, :, column - columns[0]] = self._column_values[:, local, i]
-        limits = 1 + self.rating.limits[-1]
-        found = np.full((2, 2, len(rows)), np.nan)
-        found[:limits] = np.fmin.reduce(few_margins(values, self.rating, rows, columns, limits), axis=-1)
-        return found
+                values[:, :, column - columns.start] = self._column_values[:, local, i]
+        return least_of(values, self.rating, rows, columns)[..., 0]
 
     def _all_groups(self, rows: Places, local: Places) -> Array:
         least = self._base.group_least[:, :, rows]

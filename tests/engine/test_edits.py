@@ -43,13 +43,16 @@ ROW = [1.0, 2.0, 3.0, 4.0, 5.0, 6.0]
 
 def base() -> Project:
     """A project with some of everything."""
-    section = Section("S", "round", FrozenMap({"d": 60.0}), ("wind",), FrozenMap({"N": FrozenMap({"haul": 1.0})}))
+    section = Section(
+        "S", "round", FrozenMap({"d": 60.0}), ("wind",), FrozenMap({"N": FrozenMap({"haul": 1.0}), "Vy": FrozenMap()})
+    )
     return project(
         [
             point("P1", {"LC1": axial(5.0)}, per_load={"haul": axial(1.0)}, not_felt=("wind",)),
             point("P2", {"LC1": shear(5.0), "LC2": axial(2.0)}, factor=(1.2, 1.0), temperature={"LC1": 50.0}),
             replace(point("P3"), section="S", at=(30.0, 0.0), kt=FrozenMap({"Mz": 1.5})),
             point("P4", factor=1.15, temperature=20.0),
+            point("P5", temperature={}),
         ],
         [
             case("LC1", {"haul": 12000.0, "wind": 800.0}),
@@ -89,6 +92,7 @@ APPLIED: list[tuple[Edit, str, str]] = [
     (Set("point", "P1", ("factor", "yield"), 1.5), "P1 factor yield nothing -> 1.5", "point"),
     (Set("point", "P2", ("temperature", "LC2"), 60.0), "P2 temperature LC2 nothing -> 60", "point"),
     (Set("point", "P1", ("temperature", "LC2"), 60.0), "P1 temperature LC2 nothing -> 60", "point"),
+    (Set("point", "P5", ("temperature", "LC2"), 60.0), "P5 temperature LC2 nothing -> 60", "point"),
     (Set("point", "P2", ("temperature",), 30), "P2 temperature {LC1 50} -> 30", "point"),
     (Set("point", "P3", ("kt", "T"), 1.7), "P3 kt T nothing -> 1.7", "point"),
     (Set("point", "P3", ("at",), [0, 30]), "P3 at [30, 0] -> [0, 30]", "point"),
@@ -105,6 +109,7 @@ APPLIED: list[tuple[Edit, str, str]] = [
     (Set("section", "S", ("d",), 72.5), "S d 60 -> 72.5", "section"),
     (Set("section", "S", ("resultants", "N", "haul"), 2.0), "S resultants N haul 1 -> 2", "section"),
     (Set("section", "S", ("resultants", "T", "haul"), 140), "S resultants T haul nothing -> 140", "section"),
+    (Set("section", "S", ("resultants", "Vy", "haul"), 1), "S resultants Vy haul nothing -> 1", "section"),
     (Set("load", "haul", ("unit",), None), 'haul unit "N" -> nothing', "load"),
     (Set("load", "wind", ("sense",), "reversible"), 'wind sense nothing -> "reversible"', "load"),
     (Set("project", "", ("thin",), 0.2), "thin 0.1 -> 0.2", ""),
@@ -362,6 +367,9 @@ NOWHERE: list[Edit] = [
     Move("case", "LC9", 0),
     Withdraw("P1", "temperature"),
     Batch((Remove("case", "LC9"),), "x"),
+    Set("case", "LC1", (), "x"),
+    Remove("project", ""),  # type: ignore[arg-type]
+    Move("project", "", 0),  # type: ignore[arg-type]
 ]
 
 

@@ -298,6 +298,22 @@ def test_an_equal_case_after_the_governing_one_governs_once_that_is_relieved() -
     assert governing(table) == {"C66"}
 
 
+@pytest.mark.parametrize("size", [1.0, 1e-4, 1e-8, 1e-30])  # margins of 1 to 1e30
+def test_a_case_is_relieved_however_great_the_margins(size: float) -> None:
+    points = [point(f"P{i}", per_load={"a": axial(30.0 + i)}, factor=1.15) for i in range(20)]
+    cases = [case(f"C{i}", {"a": size * (1.0 + 0.01 * i)}) for i in range(40)]
+    before = project(points, cases, loads("a"), categories=[category("normal", 1.1)])
+    after = apply(before, Set("case", "C39", ("loads", "a"), size))
+    table = compute(before)
+    assert set(table.envelope.case.ravel().tolist()) == {39}
+    table = compute(after, table)
+    assert set(table.envelope.case.ravel().tolist()) == {38}
+    check(table, after)
+    table = compute(before, table)
+    assert set(table.envelope.case.ravel().tolist()) == {39}
+    check(table, before)
+
+
 def test_cells_that_lose_their_data_stop_governing_and_come_back() -> None:
     before = apply(base(), Set("point", "P0", ("per-load", "b"), None))
     before = apply(before, Batch(tuple(Set("case", f"C{i}", ("loads", "b"), 0.0) for i in range(68)), "no b"))
@@ -359,13 +375,14 @@ def test_tension_follows_a_required_factor_that_no_strength_shows() -> None:
 def test_a_temperature_by_case_follows_a_case_to_another_column() -> None:
     hot = material("hot", 300.0, yield_at=((20.0, 300.0), (120.0, 200.0)))
     points = [point(f"P{i}", per_load={"a": axial(10.0)}, temperature={"C1": 120.0}, material="hot") for i in range(4)]
-    before = project(points, [case(f"C{i}", {"a": 9.0}) for i in range(6)], loads("a"), materials=[hot])
+    points += [point(f"Q{i}", per_load={"a": axial(10.0)}) for i in range(6)]
+    before = project(points, [case(f"C{i}", {"a": 9.0}) for i in range(6)], loads("a"), materials=[hot, material()])
     after = apply(before, Move("case", "C1", 2))
     table = compute(before)
     assert Patch.between(table, after) is not None
-    assert table.envelope.case[0].tolist() == [1] * 4
+    assert table.envelope.case[0].tolist() == [1] * 4 + [0] * 6
     table = compute(after, table)
-    assert table.envelope.case[0].tolist() == [2] * 4
+    assert table.envelope.case[0].tolist() == [2] * 4 + [0] * 6
     check(table, after)
 
 

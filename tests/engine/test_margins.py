@@ -289,6 +289,27 @@ def test_what_governs_is_found_across_groups_of_cases(cases: int) -> None:
             assert (found.case, found.limit) == loop_governing(table, row, theory)
 
 
+@pytest.mark.parametrize("size", [1e-3, 1e-6, 1e-9, 1e-12, 1e-100])  # margins of 1e5 to 1e102
+@pytest.mark.parametrize("factor", [1.0, 1.15, (1.2, 1.3)])
+def test_what_governs_is_found_however_small_the_stresses(size: float, factor: Any) -> None:
+    chance = Random(4)
+    stresses = {f"C{i}": shear(size * chance.uniform(1.0, 2.0)) for i in range(70)}
+    given = project(
+        [point(f"P{i}", stresses, factor=factor) for i in range(3)],
+        [case(name) for name in stresses],
+        categories=[category("normal", (1.1, 1.3), 1.7)],
+        materials=[material(ultimate=450.0)],
+    )
+    table = compute(given)
+    for theory in THEORIES:
+        found = table.envelope.by_theory(1, theory)
+        worst = max(stresses, key=lambda name: stresses[name][3])
+        assert given.checked[found.case].name == worst
+        least = min(table.margin[limit][theory][1, found.case] for limit in LIMITS)
+        assert table.margin[LIMITS[found.limit]][theory][1, found.case] == least
+        assert found.margin == pytest.approx(least, rel=1e-12)
+
+
 def test_group_least_margins_are_the_least_of_their_cases() -> None:
     table = compute(of_width(70, 5))
     for i, limit in enumerate(LIMITS):

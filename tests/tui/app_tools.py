@@ -91,8 +91,9 @@ class Hand:
 
     async def settle(self) -> None:
         """Until all keys that were pressed have done what they do at once."""
-        for _ in range(ROUNDS):
-            await self.pilot.pause(0)
+        for _ in range(ROUNDS - 1):
+            await self.pilot._wait_for_screen()  # what pause() does, without drawing each time
+        await self.pilot.pause(0)
 
     async def press(self, *keys: str) -> None:
         """Press keys one right after the other, as fast as a paste; then let them be done."""

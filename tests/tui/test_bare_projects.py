@@ -35,14 +35,18 @@ BARE = {
     "title only": EMPTY,
     "only cases": ONLY_CASES,
     "only points": ONLY_POINTS,
-    "only a load and a category": EMPTY + CATEGORY + LOAD,
     "no stress": NO_STRESS,
-    "no case checked": NOT_CHECKED,
     "not computed yet": UNCOMPUTED,
-    "a caution": BRITTLE,
     "names of 300 wide letters": huge_names("荷" * 300),
-    "names that are marks": huge_names("[b]'\\\\\u202e"),
 }
+MORE = {
+    "only a load and a category": EMPTY + CATEGORY + LOAD,
+    "no case checked": NOT_CHECKED,
+    "a caution": BRITTLE,
+    "names that are marks": huge_names("[b]'\\\\\u202e"),
+    "the demo": DEMO.read_text(encoding="utf-8"),
+}
+"""For the long form of these tests."""
 BOUND = [key for b in (*Grid.BINDINGS, *Desk.BINDINGS) if isinstance(b, Binding) for key in b.key.split(",")]
 OPENING = {"question_mark", "f1", "ctrl+p", "ctrl+q", "ctrl+r", "ctrl+s", "S", "x", "X"}
 """Keys that may put something on top of the desk, or touch the file."""
@@ -56,7 +60,11 @@ async def back_to_the_desk(hand: Hand) -> None:
         await hand.press("escape")
 
 
-@pytest.mark.parametrize("text", BARE.values(), ids=BARE.keys())
+@pytest.mark.parametrize(
+    "text",
+    [*BARE.values(), *(pytest.param(text, marks=pytest.mark.soak) for text in MORE.values())],
+    ids=[*BARE, *MORE],
+)
 async def test_every_key_on_every_sheet_does_no_harm(tmp_path: Path, text: str) -> None:
     path = written(tmp_path, text)
     before = store.load(path)
@@ -65,12 +73,9 @@ async def test_every_key_on_every_sheet_does_no_harm(tmp_path: Path, text: str) 
             burst = [f"f{number}", "end", *"5", "enter", "escape"]
             for key in AT_ONCE:
                 burst += [key, "escape", f"f{number}"] if key in LEADING_AWAY else [key, "escape"]
-            await hand.press(*burst)
+            await hand.press(*burst, "x", "escape", "X")
             await back_to_the_desk(hand)
             assert all(len(line) <= 80 for line in hand.lines)
-            for key in ("x", "X"):
-                await hand.press(f"f{number}", key)
-                await back_to_the_desk(hand)
         for key in ("question_mark", "f1", "ctrl+r", "S", "ctrl+q"):
             if key != "ctrl+q" or hand.document.dirty:
                 await hand.press(key)
@@ -81,9 +86,9 @@ async def test_every_key_on_every_sheet_does_no_harm(tmp_path: Path, text: str) 
         assert hand.project.same(before)
 
 
-@pytest.mark.parametrize("name", ["title only", "only points", "not computed yet", "names that are marks"])
+@pytest.mark.parametrize("name", ["title only", "not computed yet", "names that are marks"])
 async def test_a_bare_project_is_saved_as_it_was_read(tmp_path: Path, name: str) -> None:
-    path = written(tmp_path, text := BARE[name])
+    path = written(tmp_path, text := (BARE | MORE)[name])
     async with opened(path, (200, 60)) as hand:
         await hand.press("f7", "down")
         await hand.entry("enter", text="Z")
@@ -129,7 +134,7 @@ async def test_a_project_of_300_by_300_opens_moves_and_is_edited(tmp_path: Path)
 async def test_any_keys_whatever_leave_a_table_as_computed_anew(tmp_path: Path, seed: int) -> None:
     random = Random(seed)
     texts = ["60000", "1.35*42", "12 kN", "-1", "P01", "LC01 = 1", "rest", "荷重", "", "both", "0", "(((", "1/0", "1 2"]
-    path = written(tmp_path, random.choice([DEMO.read_text(encoding="utf-8"), *BARE.values()]))
+    path = written(tmp_path, random.choice([*BARE.values(), *MORE.values()]))
     async with opened(path, random.choice([(80, 24), (200, 60), (40, 10), (20, 6)])) as hand:
         for _ in range(80):
             keys = [random.choice(BOUND) for _ in range(random.choice([1, 1, 3]))]

@@ -51,9 +51,9 @@ async def test_every_point_is_named_with_its_least_margin_case_and_theory(hand: 
 
 
 async def test_at_any_size_nothing_is_wider_than_the_screen(hand: Hand) -> None:
-    for width, height in ((200, 60), (120, 40), (60, 16), (40, 12), (20, 6), (1, 1)):
+    for width, height in ((120, 40), (40, 12), (20, 6), (1, 1)):
         await hand.pilot.resize_terminal(width, height)
-        for key in ("f2", "f3", "f9", "?", "escape"):
+        for key in ("f3", "f2", "?", "escape"):
             await hand.press(key)
             assert len(hand.lines) <= height
             assert all(len(line) <= width for line in hand.lines)

@@ -5,8 +5,6 @@ from __future__ import annotations
 import signal
 from pathlib import Path
 
-import pytest
-
 from engine import store
 
 from .app_tools import DEMO, demo_copy, written
@@ -82,31 +80,17 @@ def test_killed_while_it_saves_leaves_the_file_whole(tmp_path: Path) -> None:
     assert path.read_text() in {DEMO.read_text(), DEMO.read_text().replace("haul = 75000.0", "haul = 60000.0")}
 
 
-@pytest.mark.parametrize(
-    ("words", "env"),
-    [
-        (("--ascii", "--no-mouse"), {}),
-        ((), {"LC_ALL": "POSIX", "LANG": "POSIX", "PYTHONUTF8": "0", "PYTHONIOENCODING": "ascii"}),
-    ],
-)
-def test_a_terminal_that_knows_ascii_only_gets_nothing_else(
-    tmp_path: Path, words: tuple[str, ...], env: dict[str, str]
-) -> None:
-    with hexlipse(demo_copy(tmp_path), (80, 24), *words, **env) as terminal:
-        terminal.until("FAILS, INCOMPLETE", "P01 shaft midsp.", "? keys")
+def test_a_terminal_without_colour_that_knows_ascii_only_gets_nothing_else(tmp_path: Path) -> None:
+    narrow = {"NO_COLOR": "1", "LC_ALL": "POSIX", "LANG": "POSIX", "PYTHONUTF8": "0", "PYTHONIOENCODING": "ascii"}
+    with hexlipse(demo_copy(tmp_path), (80, 24), "--no-mouse", **narrow) as terminal:
+        terminal.until("FAILS, INCOMPLETE", "P01 shaft midsp.", "-0.04 /", "? keys")
+        colours = {cell.fg for line in terminal.screen.buffer.values() for cell in line.values()}
+        assert all(colour == "default" or len({colour[:2], colour[2:4], colour[4:]}) == 1 for colour in colours), (
+            colours
+        )
         terminal.press("?")
         terminal.until("The Margins sheet")
         terminal.press("q", "ctrl+q")
         assert terminal.ended() == 0
         assert terminal.raw.isascii()
-
-
-def test_without_colour_nothing_but_grey_is_sent(tmp_path: Path) -> None:
-    with hexlipse(demo_copy(tmp_path), NO_COLOR="1") as terminal:
-        terminal.until("? keys", "-0.04 /")
-        colours = {cell.fg for line in terminal.screen.buffer.values() for cell in line.values()}
-        assert all(colour == "default" or len({colour[:2], colour[2:4], colour[4:]}) == 1 for colour in colours), (
-            colours
-        )
-        terminal.press("ctrl+q")
-        assert terminal.ended() == 0
+        assert b"\x1b[?1000h" not in terminal.raw  # the mouse is the terminal's

@@ -34,7 +34,7 @@ async def test_from_nothing_to_a_first_margin_by_keys_only(tmp_path: Path) -> No
         assert "Title of the project" in hand.text
         await hand.enter(*ANSWERS)
         assert "Winch *" in hand.lines[0]  # it is no file yet
-        assert "2 no data" in hand.lines[1]
+        await hand.until(lambda: "2 no data" in hand.lines[1], "the desk")
         await hand.press("enter")  # P01 x LC01: nothing gives its stress
         assert hand.desk.sheet.key == "stress"
         await hand.press("enter")
