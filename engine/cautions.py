@@ -18,6 +18,8 @@ from engine.table import MarginTable
 
 NOTE_NAMES = ("no-source-strength", "no-source-stress", "no-temperature", "ultimate-temperature", "ultimate-elastic")
 """The cautions that do not block."""
+MOST_NAMED = 4
+"""Cases that the text of a caution names before it only counts them."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -48,19 +50,35 @@ def blocking_flags(project: Project, rating: Rating, envelope: Envelope) -> dict
     return dict(zip(CAUTION_NAMES, found, strict=True))
 
 
-def standing(project: Project, rating: Rating, envelope: Envelope) -> int:
-    """How many blocking cautions nobody has acknowledged, point by point."""
+@dataclass(frozen=True, slots=True)
+class Tally:
+    """How many blocking cautions there are, point by point."""
+
+    standing: int
+    """Nobody has acknowledged them."""
+    acknowledged: int
+    """A person has taken them on."""
+
+
+def tally(project: Project, rating: Rating, envelope: Envelope) -> Tally:
+    """The blocking cautions of a project, counted."""
     flags = blocking_flags(project, rating, envelope)
     raised = sum(int(flag.sum()) for flag in flags.values())
     place = {point.name: i for i, point in enumerate(project.points)}
-    return raised - sum(bool(flags[given.caution][place[given.point]]) for given in project.acknowledgements)
+    taken = sum(bool(flags[given.caution][place[given.point]]) for given in project.acknowledgements)
+    return Tally(raised - taken, taken)
+
+
+def margins_pass(envelope: Envelope) -> bool:
+    """Whether some margin is known and all known ones of the accepted theories are at least zero."""
+    least = least_accepted(envelope.least, envelope.accept)
+    known = least[~np.isnan(least)]
+    return bool(len(known) and (known >= -TOLERANCE).all())
 
 
 def passes(project: Project, rating: Rating, envelope: Envelope) -> bool:
-    """Whether some margin is known, all known ones of the accepted theories are at least zero and no caution blocks."""
-    least = least_accepted(envelope.least, envelope.accept)
-    known = least[~np.isnan(least)]
-    return bool(len(known) and (known >= -TOLERANCE).all()) and standing(project, rating, envelope) == 0
+    """Whether the margins pass and no caution blocks."""
+    return margins_pass(envelope) and tally(project, rating, envelope).standing == 0
 
 
 def complete(envelope: Envelope, cases: int) -> bool:
@@ -179,10 +197,8 @@ def _text(table: MarginTable, row: int, name: str) -> str:
         case "hydrostatic-tension":
             return _tension_text(table, row)
         case "temperature":
-            column, case = _first(table, _outside(material, rating, place))
-            degrees = number_text(float(rating.temperature[place, column]))
-            uncovered = f"{degrees} in {case} is covered by no table and no range of {material.name}"
-            return f"{uncovered}; the plain values were used"
+            uncovered = _named_temperatures(table, place, _outside(material, rating, place))
+            return f"no table and no range of {material.name} covers {uncovered}; its plain values serve there"
         case "factor-below-one":
             return "a required factor or the point factor is below 1"
         case "no-source-strength":
@@ -198,6 +214,15 @@ def _text(table: MarginTable, row: int, name: str) -> str:
         case _:
             _, case = _first(table, _elastic(table, slice(row, row + 1))[0])
             return f"the elastic stress in {case} is above yield, so its ultimate margin is only a guide"
+
+
+def _named_temperatures(table: MarginTable, place: int, flags: Flags) -> str:
+    """The flagged cases with their temperatures, hottest first: "350 in LC14, 150 in LC07 and 3 more cases"."""
+    given = table.rating.temperature[place]
+    columns = sorted(np.flatnonzero(flags).tolist(), key=lambda column: -given[column])
+    named = [f"{number_text(float(given[c]))} in {table.project.checked[c].name}" for c in columns[:MOST_NAMED]]
+    more = len(columns) - len(named)
+    return ", ".join(named) + (f" and {more} more cases" if more > 1 else f" and {more} more case" if more else "")
 
 
 def _tension_text(table: MarginTable, row: int) -> str:

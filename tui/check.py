@@ -24,6 +24,8 @@ from .progress import Progress
 from .words import CAUTION, SHORT_THEORY, VERDICT, theory
 
 PASSES, FAILS, UNUSABLE = 0, 1, 2
+MOST_MISSING = 12
+"""Cases without data that are named for one point."""
 PIPE_WIDTH = 4000
 """Columns for a pipe: nothing is wrapped or cut there."""
 
@@ -87,16 +89,30 @@ def _print(report: dict[str, Any], table: MarginTable) -> None:
     console.print()
     console.print(_points(report, console.is_terminal), width=width)
     _print_cautions(console, report, width)
-    if report["never-govern"]:
-        console.print(
-            Text("Cases that never govern: " + ", ".join(visible(name) for name in report["never-govern"])), width=width
-        )
+    _print_never_govern(console, report, width)
     if "cells" in report:
         console.print(_cells(report["cells"], console.is_terminal), width=width)
     console.print()
     console.print(
         Text(f"{_accepted(report)} Stresses in {settings.units.rsplit('-', 1)[1]}. {CAUTION}"), width=min(width, 100)
     )
+
+
+def _print_never_govern(console: Console, report: dict[str, Any], width: int) -> None:
+    """Cases that govern nothing; those with a cell without data apart, for nobody knows what that cell would do."""
+    unknown = {case for point in report["points"] for case in point["missing"]}
+    sure = [name for name in report["never-govern"] if name not in unknown]
+    unsure = [name for name in report["never-govern"] if name in unknown]
+    heads = ("Cases that never govern: ", "Cases that govern nothing known, but have cells without data: ")
+    for head, names in zip(heads, (sure, unsure), strict=True):
+        if names:
+            console.print(Text(head + ", ".join(visible(name) for name in names)), width=width)
+    for point in report["points"]:
+        if point["missing"]:
+            cases = ", ".join(visible(name) for name in point["missing"][:MOST_MISSING])
+            more = len(point["missing"]) - MOST_MISSING
+            words = f"No data: {visible(point['name'])} in {cases}" + (f" and {more} more" if more > 0 else "")
+            console.print(Text(words), width=width)
 
 
 def _accepted(report: dict[str, Any]) -> str:

@@ -6,6 +6,7 @@ from collections.abc import Callable
 from functools import partial
 from typing import ClassVar
 
+from rich.cells import cell_len
 from rich.text import Text
 from textual import events
 from textual.app import ComposeResult
@@ -163,8 +164,8 @@ class Desk(PartActions, FileActions, TakeOnActions, Screen[None]):
         row, column = self.grid.cursor
         rows, columns = self.sheet.size()
         lines = self.sheet.here(row, column) if row < rows and column < columns else []
-        if self._not_taken and self.line.typing:
-            lines = said_lines("Not taken", self._not_taken, self.size.width)
+        if self._not_taken:
+            lines = said_lines("Not taken" if self.line.typing else "Not done", self._not_taken, self.size.width)
         lines = [*lines[:4], *([[("", "plain")]] * (4 - len(lines[:4]))), governs_line(self.document)]
         self.query_one("#here", Static).update(Text("\n").join(self._text(runs) for runs in lines))
         self.query_one("#rule", Static).update(
@@ -218,8 +219,10 @@ class Desk(PartActions, FileActions, TakeOnActions, Screen[None]):
         self.line.say(self._plain(message))
 
     def refuse(self, message: str) -> None:
-        """Show why something was not done."""
+        """Show why something was not done; above the last line too where that is too short for it."""
         self.say(message)
+        if cell_len(message) > self.size.width - 2:
+            self._show_refusal(message)
 
     def _hint(self) -> None:
         shown: list[str] = []
@@ -229,6 +232,8 @@ class Desk(PartActions, FileActions, TakeOnActions, Screen[None]):
         self.say("  ".join(shown))
 
     def on_grid_moved(self, _event: Grid.Moved) -> None:
+        if not self.line.typing:
+            self._not_taken = ""
         self.refresh_texts()
 
     def on_grid_scrolled(self, _event: Grid.Scrolled) -> None:
@@ -244,6 +249,7 @@ class Desk(PartActions, FileActions, TakeOnActions, Screen[None]):
 
     def action_sheet(self, key: str, subject: str = "") -> None:
         """Switch to a sheet; the cursor comes back to where it was there."""
+        self._not_taken = ""
         self._places[self._key_of(self.sheet)] = self.grid.cursor
         self.sheet = self._sheet(key, subject)
         self.grid.show(self.sheet)

@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from pathlib import Path
 
 from engine import cautions, edits, store
+from engine.cautions import Tally
 from engine.edits import Edit, Refusal
 from engine.envelope import Envelope
 from engine.margins import compute
@@ -36,8 +37,10 @@ class State:
     """Whether no margin and no caution keeps it from passing."""
     complete: bool
     """Whether no cell lacks anything."""
-    standing: int
-    """Blocking cautions that nobody has acknowledged."""
+    cautions: Tally
+    """Blocking cautions, standing and acknowledged."""
+    margins_pass: bool
+    """Whether the margins alone pass."""
 
 
 def state_of(project: Project, rating: Rating, envelope: Envelope) -> State:
@@ -47,7 +50,8 @@ def state_of(project: Project, rating: Rating, envelope: Envelope) -> State:
         envelope,
         cautions.passes(project, rating, envelope),
         cautions.complete(envelope, len(project.checked)),
-        cautions.standing(project, rating, envelope),
+        cautions.tally(project, rating, envelope),
+        cautions.margins_pass(envelope),
     )
 
 

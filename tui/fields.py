@@ -15,7 +15,7 @@ from engine.figures import number_text
 from engine.reading import Plain
 from engine.units import Kind, UnitSystem
 
-Form = Literal["text", "number", "flag", "pairs", "pair", "row", "table", "names", "count"]
+Form = Literal["text", "number", "flag", "pairs", "pair", "row", "table", "map", "names", "count"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -96,8 +96,10 @@ def plain_from(text: str, field: Field, system: UnitSystem) -> Plain:
             return list(parse_row(text, 2 if field.form == "pair" else 6, field.kind, system if field.kind else None))
         case "names":
             return text if text == "rest" else [name.strip() for name in text.split(",") if name.strip()]
-        case "table":
-            return _number_or_table(text, field, system)
+        case "table" if "=" not in text:
+            return parse(text, field.kind, system) if field.kind else parse(text)
+        case "table" | "map":
+            return _table(text)
         case _:
             raise Refusal("this is edited in a sheet of its own: press Enter on it")
 
@@ -109,10 +111,8 @@ def _flag(text: str) -> bool:
     return words[text.lower()]
 
 
-def _number_or_table(text: str, field: Field, system: UnitSystem) -> Plain:
-    """One number, or `name = number, name = number` as in the file."""
-    if "=" not in text:
-        return parse(text, field.kind, system) if field.kind else parse(text)
+def _table(text: str) -> Plain:
+    """`name = number, name = number` as in the file."""
     try:
         return tomllib.loads(f"table = {{ {text} }}")["table"]
     except tomllib.TOMLDecodeError:

@@ -57,7 +57,7 @@ class FileActions:
                 self._saved(saving, saving.write(), then)
                 return None
         except (SaveError, Refusal) as error:
-            self.refuse(f"not saved: {error}")
+            self.refuse(str(error))
             return str(error)
         if self._saving:
             self.refuse("the last save is still being written")
@@ -77,7 +77,7 @@ class FileActions:
 
     def _not_saved(self, why: str) -> None:
         self._saving = False
-        self.refuse(f"not saved: {why}")
+        self.refuse(why)
 
     def _saved(self, saving: Saving, text: str, then: Callable[[], None] | None) -> None:
         self._saving = False
@@ -137,7 +137,7 @@ class FileActions:
         if not self.document.dirty:
             self.app.exit(return_code=0)
             return
-        count = len(self.document.history.done)
+        count = self.document.history.unsaved
         what = f"{plural(count, 'edit')} not saved" if count else "this project is not saved"
         options = [("s", "save", "save, then leave"), ("l", "leave", "leave without saving: the edits are lost")]
         self.app.push_screen(Question(what.capitalize() + ".", options, "stay"), self._leave)

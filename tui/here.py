@@ -9,7 +9,7 @@ import numpy as np
 
 from engine import criteria
 from engine.envelope import TOLERANCE, Governing, controls
-from engine.figures import margin_text, number_text, percent_text, stress_text
+from engine.figures import margin_text, number_text, stress_text
 from engine.influence import why_missing
 from engine.material import LIMITS, THEORIES
 from engine.units import SYSTEMS
@@ -159,14 +159,13 @@ def governs_line(document: Document) -> Runs:
 
 
 def said(tresca: float, von_mises: float) -> str:
-    """ "Tresca fails by 4 %, von Mises passes", or both margins where the theories agree on that."""
+    """Both margins, and which theory fails where only one does."""
     numbers = f"{margin_text(tresca)} Tresca, {margin_text(von_mises)} von Mises"
     fails = [name for name, m in zip(THEORIES, (tresca, von_mises), strict=True) if m < -TOLERANCE]
     if len(fails) != 1:
         return numbers
-    margin = tresca if fails[0] == "tresca" else von_mises
-    other = "von-mises" if fails[0] == "tresca" else "tresca"
-    return f"{THEORY[fails[0]]} fails by {percent_text(margin)}, {THEORY[other]} passes"
+    told = [f"{THEORY[name]} {'fails' if name in fails else 'passes'}" for name in THEORIES]
+    return f"{told[0]} {margin_text(tresca)}, {told[1]} {margin_text(von_mises)}"
 
 
 def said_lines(label: str, text: str, width: int = 80) -> list[Runs]:

@@ -35,6 +35,11 @@ class History:
         """Whether the file does not hold what is on screen."""
         return self.saved != len(self.done)
 
+    @property
+    def unsaved(self) -> int:
+        """How many steps lie between the file and the screen; all of them where the file's state is out of reach."""
+        return len(self.done) if self.saved is None else abs(len(self.done) - self.saved)
+
     def commit(self, step: Step) -> None:
         """A new edit was made: what was undone before it is gone."""
         if self.saved is not None and self.saved > len(self.done):

@@ -23,7 +23,7 @@ from .sheet import WorkSheet
 CASE_FIELDS = (
     Field(("category",), "category", width=13, hint="name of a category"),
     Field(("temperature",), "temp.", "number", 9, "temperature", "empty: not given"),
-    Field(("combine",), "combine", "table", 26, hint="case = factor, case = factor"),
+    Field(("combine",), "combine", "map", 26, hint="case = factor, case = factor; as in LC01 = 1.1, LC02 = 0.5"),
     Field(("check",), "check", "flag", 8, hint="yes, or no: only an ingredient of combinations"),
     Field(("label",), "label", width=30),
 )
@@ -81,7 +81,7 @@ class LoadsSheet(WorkSheet):
         return "There is no load case yet.\nPress a to add one; A (shift and a) adds a load."
 
     def shows(self) -> str:
-        return "magnitudes by case; least: margin of the worst point in the case"
+        return "magnitudes; least: worst point in the case"
 
     # ---- drawing
 
@@ -169,11 +169,16 @@ class LoadsSheet(WorkSheet):
             [(f" {'load':<10} ", "dim"), (f"{load.label or load.name}   {unit}   {load.sense}", "plain")],
             [(f" {'magnitude':<10} ", "dim"), (self._sum_text(case, column, own), "plain")],
         ]
-        felt = sum(load.name in point.per_load for point in self.document.project.points)
-        lines.append(
-            [(f" {'felt by':<10} ", "dim"), (f"{felt} of {len(self.document.project.points)} points", "plain")]
-        )
+        lines.append([(f" {'felt by':<10} ", "dim"), (self._felt_text(load), "plain")])
         return lines
+
+    def _felt_text(self, load: Load) -> str:
+        """Who feels a load, and who does not follow it because its stress is given by case."""
+        points = self.document.project.points
+        felt = f"{sum(load.name in point.per_load for point in points)} of {len(points)} points"
+        direct = sum(not point.linear for point in points)
+        follow = "follows" if direct == 1 else "follow"
+        return f"{felt}; {direct} with stress given by case {follow} no load" if direct else felt
 
     def _sum_text(self, case: Case, column: int, own: float | None) -> str:
         if not case.combine:

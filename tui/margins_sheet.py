@@ -256,9 +256,7 @@ class MarginsSheet(WorkSheet):
                 "", message=f"{point.name} takes its stress from section {point.section}, which is not computed yet"
             )
         if point.linear:
-            text = (
-                f"{point.name} is linear: loads x stress per unit load make its stress; edit the loads of {case} here"
-            )
+            text = f"linear: the loads of {case} make the stress of {point.name}; edit them here"
             return Opening("loads", row=case, message=text)
-        text = f"{point.name} has its stress given directly; edit the row of {case} here"
+        text = f"direct: the stress of {point.name} in {case} is given as this row"
         return Opening("stress", row=case, subject=point.name, message=text)

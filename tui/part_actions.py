@@ -3,12 +3,13 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from functools import partial
 from typing import Any
 
 from engine.edits import CODEC, Batch, Edit, Insert, Move, Refusal, Rename, Set
 from engine.entry import EntryError, parse
 from engine.project import Kind, Project
-from engine.reading import Plain
+from engine.reading import Plain, did_you_mean
 from engine.references import uses
 from engine.removal import removal
 from engine.units import SYSTEMS
@@ -18,8 +19,8 @@ from .entry_line import Request
 from .sheet import Axis, WorkSheet
 from .stress_sheet import StressSheet
 
-Ask = tuple[str, str, Callable[[str], Plain]]
-"""(key of the file, what is asked, reader of the entry); the reader gives None for a key left out."""
+Ask = tuple[str, str, Callable[[str], Plain], str]
+"""(key of the file, what is asked, reader of the entry, text to begin with); None read leaves the key out."""
 
 
 class PartActions:
@@ -67,30 +68,61 @@ class PartActions:
             where = "F5, then a" if needs == "material" else "F8, then a"
             self.refuse(f"a {kind} needs a {needs}, and there is none yet: {where}")
             return
-        self._ask_next(kind, axis, {}, [("name", f"name of the new {kind}", _required), *self._asks(kind, project)])
+        self._ask_next(kind, axis, {}, [("name", f"name of the new {kind}", _required, ""), *self._asks(kind, project)])
 
     def _asks(self, kind: Kind, project: Project) -> list[Ask]:
         system = SYSTEMS[project.settings.units]
         match kind:
             case "material":
-                return [("yield", f"yield strength ({system.stress})", lambda text: parse(text, "stress", system))]
+                strength = partial(parse, kind="stress", system=system)
+                return [
+                    ("yield", f"yield or proof strength ({system.stress})", strength, ""),
+                    (
+                        "ultimate",
+                        f"ultimate strength ({system.stress}), or empty: not known",
+                        lambda text: strength(text) if text.strip() else None,
+                        "",
+                    ),
+                ]
             case "category":
                 return [
-                    ("yield.tresca", "required factor against yield, Tresca", parse),
-                    ("yield.von-mises", "required factor against yield, von Mises", parse),
+                    ("yield.tresca", "required factor against yield, Tresca", parse, ""),
+                    ("yield.von-mises", "required factor against yield, von Mises", parse, ""),
                 ]
             case "load":
                 units = f"{system.force}, {system.moment}, {system.stress} ..."
                 return [
-                    ("unit", f"its unit: {units}, or empty for a plain multiplier", lambda text: text.strip() or None)
+                    (
+                        "unit",
+                        f"its unit: {units}, or empty for a plain multiplier",
+                        lambda text: text.strip() or None,
+                        "",
+                    )
                 ]
             case "section":
-                return [("d", f"diameter of the round ({system.length})", lambda text: parse(text, "length", system))]
+                return [
+                    ("d", f"diameter of the round ({system.length})", partial(parse, kind="length", system=system), "")
+                ]
             case _:
-                return []
+                return self._asks_needed(kind, project)
+
+    def _asks_needed(self, kind: Kind, project: Project) -> list[Ask]:
+        """The category of a case or the material of a point, where there is a choice: margins hang on it."""
+        key: Kind = "material" if kind == "point" else "category"
+        names = project.names(key)
+        if len(names) < 2:
+            return []
+
+        def named(text: str) -> str:
+            if text.strip() not in names:
+                raise Refusal(f"no {key} is named so{did_you_mean(text.strip(), names)}")
+            return text.strip()
+
+        near = self._near(kind)
+        return [(key, f"its {key}", named, getattr(near, key) if near is not None else "")]
 
     def _ask_next(self, kind: Kind, axis: Axis, given: dict[str, Plain], asks: list[Ask]) -> None:
-        key, label, reader = asks[0]
+        key, label, reader, initial = asks[0]
 
         def submit(text: str) -> str | None:
             try:
@@ -105,7 +137,7 @@ class PartActions:
                 return None
             return self._insert(kind, axis, answers)
 
-        self.line.ask(Request(label, "", submit))
+        self.line.ask(Request(label, initial, submit))
 
     def _insert(self, kind: Kind, axis: Axis, answers: dict[str, Plain]) -> str | None:
         why = self.commit(Insert(kind, self._place_after(kind, axis), self._document(kind, answers)))
@@ -122,8 +154,7 @@ class PartActions:
             return answers | {"shape": "round"}
         if kind in {"point", "case"}:
             key: Kind = "material" if kind == "point" else "category"
-            near = self._near(kind)
-            return answers | {key: getattr(near, key) if near is not None else project.names(key)[0]}
+            return {key: project.names(key)[0]} | answers
         return answers
 
     def _near(self, kind: Kind) -> Any:

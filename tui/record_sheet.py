@@ -147,8 +147,8 @@ class RecordSheet(WorkSheet):
         lines: list[Runs] = [
             [(f" {'Here':<10} ", "dim"), (f"{self.row_name(row)}   {self._label(row)}", "governs")],
             [
-                (f" {field.path[-1]:<10} ", "dim"),
-                (f"{text} {self._unit(field) if text != 'not given' else ''}", "plain"),
+                (f" {'value':<10} ", "dim"),
+                (f"{' '.join(field.path)}: {text} {self._unit(field) if text != 'not given' else ''}", "plain"),
             ],
         ]
         if field.hint:

@@ -58,7 +58,8 @@ class SummaryLines(Static):
 
     def _outcome(self, state: State, typing: bool) -> Text:
         role = "plain here" if state.passes and state.complete else "short here"
-        words = f"{'PASSES' if state.passes else 'FAILS'}, {'COMPLETE' if state.complete else 'INCOMPLETE'}"
+        fails = "FAILS BY CAUTION" if state.margins_pass else "FAILS"
+        words = f"{'PASSES' if state.passes else fails}, {'COMPLETE' if state.complete else 'INCOMPLETE'}"
         return Text(("would be: " if typing else "") + words, self._palette.style(role))
 
     def _second(self, state: State, notes: int, width: int, typing: bool) -> Text:
@@ -70,20 +71,41 @@ class SummaryLines(Static):
             line.append(f"{counts[verdict]} {VERDICT[verdict]}{mark}", self._palette.style(role))
             line.append("  ", self._palette.style("plain"))
         line.rstrip()
+        room = width - line.cell_len - 3
         if typing:
-            return self._spread(line, Text(self._worst(state), self._palette.style("here")), width)
-        role = "short" if state.standing else "dim"
-        return self._spread(line, self._fitting(self._cautions(state, notes), width - line.cell_len - 3, role), width)
+            return self._spread(line, self._fitting(self._worst(state), room, "here"), width)
+        role = "short" if state.cautions.standing else "dim"
+        return self._spread(line, self._fitting(self._cautions(state, notes), room, role), width)
 
     @staticmethod
     def _cautions(state: State, notes: int) -> list[str]:
         """How many cautions stand, longest wording first."""
-        noted = plural(notes, "note")
-        if not state.standing:
-            return [f"no caution blocks, {noted}", f"no caution, {noted}", noted]
-        blocks = plural(state.standing, "caution blocks", "cautions block")
-        short = f"{state.standing} {'blocks' if state.standing == 1 else 'block'}"
-        return [f"{blocks}, {noted}", f"cautions: {short}, {noted}", f"{short}, {noted}", short]
+        noted, taken, standing = plural(notes, "note"), state.cautions.acknowledged, state.cautions.standing
+        if standing:
+            blocks = plural(standing, "caution blocks", "cautions block")
+            short = f"{standing} {'blocks' if standing == 1 else 'block'}"
+            return [f"{blocks}, {noted}", f"cautions: {short}, {noted}", f"{short}, {noted}", short]
+        if taken:
+            return [
+                f"{plural(taken, 'caution')} acknowledged, {noted}",
+                f"{taken} acknowledged, {noted}",
+                f"{taken} ack., {noted}",
+            ]
+        return [f"no caution blocks, {noted}", f"no caution, {noted}", noted]
+
+    @staticmethod
+    def _worst(state: State) -> list[str]:
+        """The governing cell that would be, longest wording first."""
+        found = state.envelope.of_project()
+        if not found.known:
+            return ["nothing known"]
+        point = visible(state.project.points[found.point].name)
+        margin, case = margin_text(found.margin), governing_case(state.project, found)
+        return [
+            f"worst {margin} {point} {case} {LIMITS[found.limit]}",
+            f"{margin} {point[:10]} {case}",
+            f"worst {margin}",
+        ]
 
     def _third(self, shows: str, where: Sequence[str], width: int) -> Text:
         left = Text(visible(shows), self._palette.style("dim"))
@@ -93,15 +115,6 @@ class SummaryLines(Static):
         """The first wording that fits, else none."""
         found = next((words for words in wordings if cell_len(visible(words)) <= room), "")
         return Text(visible(found), self._palette.style(role))
-
-    @staticmethod
-    def _worst(state: State) -> str:
-        found = state.envelope.of_project()
-        if not found.known:
-            return "nothing known"
-        point = state.project.points[found.point].name
-        where = f"{visible(point)[:14]} {governing_case(state.project, found)} {LIMITS[found.limit]}"
-        return f"{margin_text(found.margin)} {where}"
 
     def _spread(self, left: Text, right: Text, width: int, middle: Text | None = None) -> Text:
         """Left, middle and right of one line; the right gives way where there is no room."""

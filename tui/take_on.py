@@ -8,6 +8,7 @@ from typing import Any
 from engine.edits import Acknowledge, Edit, Withdraw
 
 from .cautions_sheet import CautionsSheet
+from .dialogs import Question
 from .entry_line import Request
 
 
@@ -17,6 +18,7 @@ class TakeOnActions:
     sheet: Any
     grid: Any
     line: Any
+    app: Any
     commit: Callable[[Edit], str | None]
     say: Callable[[str], None]
 
@@ -29,9 +31,14 @@ class TakeOnActions:
         if not found.blocking:
             self.say("a note blocks nothing: there is nothing to take on")
         elif found.acknowledged:
-            self.commit(Withdraw(point, found.name))
+            self._ask_withdraw(Withdraw(point, found.name))
         else:
             self._ask_who(point, found.name)
+
+    def _ask_withdraw(self, edit: Withdraw) -> None:
+        text = f"{edit.caution} at {edit.point} is acknowledged. Withdrawing that drops the name and the reason given."
+        options = [("w", "yes", "withdraw it: the caution blocks again")]
+        self.app.push_screen(Question(text, options), lambda answer: self.commit(edit) if answer else None)
 
     def _ask_who(self, point: str, caution: str) -> None:
         def submit(text: str) -> str | None:
