@@ -28,6 +28,7 @@ import threading
 from collections import deque
 from collections.abc import Callable, Iterable, Iterator, Sequence
 from concurrent.futures import ThreadPoolExecutor
+from functools import cache
 from typing import Any, NamedTuple
 
 import numpy as np
@@ -43,32 +44,22 @@ memory page, or all work rows would compete for the same places in the cache."""
 LEAST, MOST = 1e-45, 1e45
 """Von Mises stresses between which the sixth powers in D neither vanish nor overflow."""
 
-
-def _constants(*values: float) -> tuple[Floats, ...]:
-    """The values as arrays without axes; a Python number costs half as much again as the NumPy call it is given to."""
-    return tuple(np.array(value) for value in values)
-
-
-NUMERATOR = _constants(
-    1.572624328025048,
-    8.07027898811952,
-    13.793540907778594,
-    8.960687242110927,
-    1.8193199781182536,
-    0.04367001126549273,
+ROOT = tuple(
+    np.array(pair).reshape(2, 1)
+    for pair in (
+        (1.572624328025048, 3.1452486560504633),
+        (8.07027898811952, 18.499494468201302),
+        (13.793540907778594, 38.31645401603888),
+        (8.960687242110927, 33.31939391161381),
+        (1.8193199781182536, 11.226722628198713),
+        (0.04367001126549273, 1.0),
+    )
 )
-DENOMINATOR = _constants(
-    3.1452486560504633,
-    18.499494468201302,
-    38.31645401603888,
-    33.31939391161381,
-    11.226722628198713,
-    1.0,
-)
-"""Ascending coefficients of p and q: 1 + y p(y)/q(y) is the largest root w of w^3 - w = y for y in [0, 2/sqrt(27)],
-within 9e-17 of its size; a minimax fit made at 60 digits."""
+"""Ascending coefficients of p and q, side by side: 1 + y p(y)/q(y) is the largest root w of w^3 - w = y for y in
+[0, 2/sqrt(27)], within 9e-17 of its size; a minimax fit made at 60 digits."""
 
-HALF, THREE, FOUR = _constants(0.5, 3.0, 4.0)
+HALF, THREE, FOUR = np.array(0.5), np.array(3.0), np.array(4.0)
+"""Arrays without axes: a Python number costs half as much again as the NumPy call it is given to."""
 
 IN_PLANE = 1e-9
 """Relative difference within which the in-plane shear is the greatest shear there is."""
@@ -210,9 +201,15 @@ def _in_threads(threads: int, stress: Floats, tresca: Floats, von_mises: Floats)
     n = stress.shape[1]
     step = min(BLOCK, -(-n // threads))
     starts = deque(range(0, n, step))
-    with ThreadPoolExecutor(threads) as pool:
-        for done in [pool.submit(_blocks, starts, step, stress, tresca, von_mises) for _ in range(threads)]:
-            done.result()
+    pool = _pool(threads)
+    for done in [pool.submit(_blocks, starts, step, stress, tresca, von_mises) for _ in range(threads)]:
+        done.result()
+
+
+@cache
+def _pool(threads: int) -> ThreadPoolExecutor:
+    """Threads that stay, so that their work rows do too."""
+    return ThreadPoolExecutor(threads, thread_name_prefix="criteria")
 
 
 def _blocks(starts: deque[int], step: int, stress: Floats, tresca: Floats, von_mises: Floats) -> None:
@@ -445,16 +442,12 @@ def _paired_terms(room: _Room, s: _Triple) -> None:
 
 def _largest_root(y: Floats, von_mises: Floats, tresca: Floats, room: _Room) -> None:
     """von Mises (1 + y p(y)/q(y)): never below von Mises, as nothing in it is negative."""
-    p, q = room.f.rows[0], room.f.rows[1]
-    multiply(y, NUMERATOR[-1], p)
-    for coefficient in NUMERATOR[-2:0:-1]:
-        add(p, coefficient, p)
-        multiply(p, y, p)
-    add(p, NUMERATOR[0], p)
-    add(y, DENOMINATOR[-2], q)  # the leading coefficient is 1
-    for coefficient in DENOMINATOR[-3::-1]:
-        multiply(q, y, q)
-        add(q, coefficient, q)
+    both, (p, q, _) = room.f.whole[:2], room.f.rows
+    multiply(y, ROOT[-1], both)
+    for pair in ROOT[-2:0:-1]:
+        add(both, pair, both)
+        multiply(both, y, both)
+    add(both, ROOT[0], both)
     multiply(p, y, p)
     divide(p, q, p)
     multiply(p, von_mises, p)

@@ -424,9 +424,7 @@ def cautions(project: Table, point: Table) -> list[Table]:
     found = of_the_point(project, point)
     for case in checked(project):
         found |= of_strength(project, point, case) | of_stress(project, point, case) | of_factors(project, point, case)
-    taken = {
-        entry["caution"] for entry in listed(project, "acknowledge") if entry["point"] == point["name"]
-    }
+    taken = {entry["caution"] for entry in listed(project, "acknowledge") if entry["point"] == point["name"]}
     return [
         {"name": name, "text": "", "blocking": name in BLOCKING, "acknowledged": name in taken}
         for name in BLOCKING + NOTES

@@ -29,7 +29,9 @@ B = A.replace('"A"', '"B"')
 POINT = '[[point]]\nname = "P"\nmaterial = "steel"\nsource = "s"\n'
 
 # The invented winch: round numbers that a pocket calculator follows.
-WINCH = HEAD + """
+WINCH = (
+    HEAD
+    + """
 [[category]]
 name = "normal"
 yield = 1.5
@@ -106,6 +108,7 @@ material = "1.4301"
 not-felt = "rest"
 per-load = { brake = [5, 10, -1, 0, 0, 0] }
 """
+)
 
 
 def row(*values: float) -> str:

@@ -57,8 +57,9 @@ class FileActions:
                 self._saved(saving, saving.write(), then)
                 return None
         except (SaveError, Refusal) as error:
-            self.refuse(str(error))
-            return str(error)
+            why = self._why_not(error)
+            self.refuse(why)
+            return why
         if self._saving:
             self.refuse("the last save is still being written")
             return None
@@ -71,9 +72,14 @@ class FileActions:
         try:
             text = saving.write()
         except SaveError as error:
-            self.app.call_from_thread(self._not_saved, str(error))
+            self.app.call_from_thread(self._not_saved, self._why_not(error))
             return
         self.app.call_from_thread(self._saved, saving, text, then)
+
+    @staticmethod
+    def _why_not(error: Exception) -> str:
+        """Why nothing was saved, the reason first: the path before it may be longer than the line."""
+        return f"not saved: {str(error).rpartition(' was not saved: ')[2]}"
 
     def _not_saved(self, why: str) -> None:
         self._saving = False

@@ -198,7 +198,7 @@ reason = "compression side in service; checked by test"
 '''
 """Every key of the format."""
 
-SCATTERED = '''\
+SCATTERED = """\
 format = 1
 [[point]]
 name = "A"
@@ -229,7 +229,7 @@ name = "two"
 category = "c"
 [point.temperature]
 one = 20
-'''
+"""
 """Kinds mixed, tables far from their entries, no blank line."""
 
 SPOKEN = """\

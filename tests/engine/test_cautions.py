@@ -7,7 +7,7 @@ from typing import Any
 import numpy as np
 import pytest
 
-from engine.cautions import NOTE_NAMES, Caution, blocking_flags, complete, note_flags, of_point, passes, standing
+from engine.cautions import NOTE_NAMES, Caution, blocking_flags, complete, note_flags, of_point, passes, tally
 from engine.integrity import CAUTION_NAMES
 from engine.margins import MarginTable, compute
 from engine.project import Acknowledgement, Project
@@ -254,7 +254,7 @@ def test_an_acknowledgement_holds_for_its_point_alone() -> None:
     )
     table = compute(given)
     assert [of_point(table, row)[0].acknowledged for row in (0, 1)] == [False, True]
-    assert standing(given, table.rating, table.envelope) == 1
+    assert tally(given, table.rating, table.envelope).standing == 1
 
 
 def test_an_acknowledgement_of_a_caution_that_does_not_stand_takes_nothing_away() -> None:
@@ -264,7 +264,7 @@ def test_an_acknowledgement_of_a_caution_that_does_not_stand_takes_nothing_away(
         acknowledgements=[Acknowledgement("P", "temperature", "A. B.", "tested")],
     )
     table = compute(given)
-    assert standing(given, table.rating, table.envelope) == 1
+    assert tally(given, table.rating, table.envelope).standing == 1
 
 
 @pytest.mark.parametrize("seed", range(60))
@@ -274,7 +274,7 @@ def test_the_cautions_of_all_points_are_those_of_each(seed: int) -> None:
     for row in range(table.shape[0]):
         assert {c.name for c in of_point(table, row)} == {name for name, flag in flags.items() if flag[row]}
     taken = [caution.blocking and not caution.acknowledged for caution in all_cautions(table)]
-    assert standing(table.project, table.rating, table.envelope) == sum(taken)
+    assert tally(table.project, table.rating, table.envelope).standing == sum(taken)
 
 
 def all_cautions(table: MarginTable) -> list[Caution]:

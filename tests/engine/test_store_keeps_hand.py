@@ -87,7 +87,7 @@ def test_the_first_entry_of_a_kind_comes_below_those_of_earlier_kinds() -> None:
     text = f"format = 1\n{project}[[category]]\nname = 'c'\nyield = 1\n"
     case = "[[case]]\nname = 'one'\ncategory = 'c'\n"
     new = after(f"{text}{case}", Insert("load", 0, {"name": "F"}))
-    assert new == f"{text}[[load]]\nname = \"F\"\n{case}"
+    assert new == f'{text}[[load]]\nname = "F"\n{case}'
 
 
 @pytest.mark.parametrize("name", list(FILES))

@@ -58,6 +58,7 @@ def as_json(path: Path, capsys: pytest.CaptureFixture[str], cells: bool = False)
         (PASSING.replace("[10.0, 0,", "[66.66666666666667, 0,"), 0),  # zero, and zero is no failure
         (BRITTLE, 1),  # a caution that blocks
         (NO_STRESS, 1),  # a cell without data
+        (PASSING + '[[case]]\nname = "LC02"\ncategory = "normal"\n', 1),  # what is known passes, and not all is known
         (NOT_CHECKED, 1),  # no cell
         (EMPTY, 1),
         (ONLY_CASES, 1),
@@ -202,7 +203,7 @@ def test_into_a_pipe_every_point_is_one_line_without_control_characters(capsys: 
     assert lines[2] == "Governs: P11 brake cyl bore in LC07, yield, Tresca: -0.29"
     row = next(line for line in lines if line.startswith("P02"))
     assert " ".join(row.split()) == "P02 shaft at bearing -0.04 / LC09 yield Tresca -0.04 LC09 +0.00 LC09"
-    assert "Caution, blocks: temperature: 150 in LC07" in out
+    assert "Caution, blocks: temperature: no table and no range of S355 16-40 covers 350 in LC14, 150 in LC07" in out
     assert "Cases that never govern: LC01" in out
     assert "licensed engineer" in " ".join(out.split())
 

@@ -38,13 +38,13 @@ def names(hand: Hand, kind: Kind) -> tuple[str, ...]:
 
 ADDED: list[tuple[list[str], list[str], Kind, int]] = [
     # keys, answers, kind, place of the new part
-    (["f2", "down", "a"], ["P99"], "point", 2),  # after the one under the cursor
-    (["f2", "right", "A"], ["LC99"], "case", 2),
-    (["f3", "down", "a"], ["LC99"], "case", 2),
+    (["f2", "down", "a"], ["P99", ""], "point", 2),  # after the one under the cursor
+    (["f2", "right", "A"], ["LC99", ""], "case", 2),
+    (["f3", "down", "a"], ["LC99", ""], "case", 2),
     (["f3", "ctrl+home", "A"], ["wind", "N"], "load", 1),
     (["f3", "end", "A"], ["boost", ""], "load", 6),  # behind the loads: at the end; a plain multiplier
-    (["f4", "a"], ["P99"], "point", 1),
-    (["f5", "a"], ["42CrMo4", "900"], "material", 1),
+    (["f4", "a"], ["P99", ""], "point", 1),
+    (["f5", "a"], ["42CrMo4", "900", "1100"], "material", 1),
     (["f6", "a"], ["A-A", "6 cm"], "section", 0),
     (["f8", "a"], ["test", "1.05", "1.1"], "category", 1),
     (["f10", "a"], ["wind", "MPa"], "load", 1),
@@ -72,19 +72,27 @@ async def test_a_unit_that_the_project_does_not_have_is_refused_and_can_be_typed
 
 async def test_the_cursor_goes_to_what_was_added(hand: Hand) -> None:
     await hand.press("down", "right", "a")
-    await hand.enter("P99")
+    await hand.enter("P99", "")
     assert hand.desk.grid.cursor == (2, 1)
     await hand.press("A")
-    await hand.enter("LC99")
+    await hand.enter("LC99", "")
     assert hand.desk.grid.cursor == (2, 2)
     assert "P99 x LC99" in hand.text
 
 
-async def test_a_new_point_or_case_takes_material_and_category_from_its_neighbour(hand: Hand) -> None:
+async def test_a_new_point_or_case_is_asked_for_material_and_category_beginning_with_its_neighbours(hand: Hand) -> None:
     await hand.press(*["down"] * 3, *["right"] * 8, "a")
     await hand.enter("P99")
+    assert hand.desk.line.text == "1.4301 plate"
+    await hand.enter("")
     await hand.press("A")
     await hand.enter("LC99")
+    assert hand.desk.line.text == "occasional"
+    await hand.press("ctrl+u")
+    await hand.enter("sometimes")
+    assert "no category is named so" in hand.message
+    await hand.press("ctrl+u")
+    await hand.enter("occasional")
     assert hand.project.points[4].material == "1.4301 plate"
     assert hand.project.cases[9].category == "occasional"
 
@@ -126,7 +134,7 @@ async def test_from_an_empty_project_to_a_margin_by_keys(tmp_path: Path) -> None
     async with opened(written(tmp_path, EMPTY)) as hand:
         assert "There is no check point yet" in hand.text
         await hand.press("f5", "a")
-        await hand.enter("S355", "345")
+        await hand.enter("S355", "345", "")
         await hand.press("f8", "a")
         await hand.enter("normal", "1.5", "1.5")
         await hand.press("f2", "a")

@@ -38,7 +38,7 @@ def texts(state: State) -> tuple[object, ...]:
     """What the summary says of a state."""
     found = state.envelope.of_project()
     governs = (found.point, found.case, found.limit, found.theory, found.margin)
-    return state.envelope.counts(), state.passes, state.complete, state.standing, governs
+    return state.envelope.counts(), state.passes, state.complete, state.cautions.standing, governs
 
 
 def assert_fresh(table: MarginTable) -> None:
@@ -58,7 +58,12 @@ def test_an_opened_project_is_clean_and_computed(winch: Document) -> None:
     assert not winch.dirty
     assert winch.table.project is winch.project
     assert winch.state.envelope.counts() == {"clear": 7, "thin": 1, "split": 1, "short": 2, "no-data": 1}
-    assert (winch.state.passes, winch.state.complete, winch.state.standing, winch.notes) == (False, False, 1, 2)
+    assert (winch.state.passes, winch.state.complete, winch.state.cautions.standing, winch.notes) == (
+        False,
+        False,
+        1,
+        2,
+    )
 
 
 @pytest.mark.parametrize("edit", EDITS, ids=lambda edit: type(edit).__name__)

@@ -111,7 +111,7 @@ def test_every_field_of_a_case_can_be_changed(case: str, field: str, text: str, 
         ("LC09", "temperature", "warm", "not read"),
         ("LC15", "temperature", "", "a temperature of its own"),  # its ingredients have one
         ("LC15", "combine", "LC99 = 1", 'no case is named "LC99"'),
-        ("LC15", "combine", "LC01", "not read"),
+        ("LC15", "combine", "LC01", "expected name = number"),
         ("LC13", "combine", "LC15 = 1", "ring"),
         ("LC16", "combine", "LC16 = 1", "ring"),
         ("LC09", "check", "maybe", "yes or no"),

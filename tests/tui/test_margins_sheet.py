@@ -189,7 +189,7 @@ def test_enter_on_a_direct_cell_leads_to_the_points_row_of_its_case_and_says_so(
     opening = opened().opens(POINTS["P12"], CASES["LC09"])
     assert opening is not None
     assert (opening.sheet, opening.row, opening.subject) == ("stress", "LC09", "P12 bed anchor FE")
-    assert "directly" in opening.message
+    assert "direct:" in opening.message
 
 
 def test_enter_on_a_point_of_a_section_leads_nowhere_and_says_why() -> None:

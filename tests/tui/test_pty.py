@@ -25,7 +25,7 @@ def test_a_load_is_edited_the_governing_case_changes_and_the_file_differs_in_one
         terminal.until("FAILS, INCOMPLETE", "2 short X  1 split /", "? keys")
         assert terminal.row("P02").split()[4:9] == ["-0.04", "/", "LC09", "yield", "Tresca│"]
         terminal.press("f3")
-        terminal.until("magnitudes by case")
+        terminal.until("magnitudes; least")
         terminal.press(*["down"] * 8, *"60000")
         terminal.until("LC09 haul (N): 60000", "would be", "0 split /")
         terminal.press("enter")

@@ -205,7 +205,7 @@ def test_the_prompt_names_part_field_and_unit() -> None:
 def test_here_says_the_value_with_its_unit_or_that_none_is_given() -> None:
     sheet = sheet_of(opened(), "materials")
     said = ["".join(text for text, _ in runs) for runs in sheet.here(0, 0)]
-    assert said[1].split() == ["yield", "345", "MPa"]
+    assert said[1].split() == ["value", "yield:", "345", "MPa"]
     said = ["".join(text for text, _ in runs) for runs in sheet.here(0, column(sheet, "shear-yield"))]
     assert "not given" in said[1]
     assert "MPa" not in said[1]
