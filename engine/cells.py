@@ -79,7 +79,8 @@ def margins_of(values: Array, rating: Rating, rows: Places, columns: Places | sl
     """(2, rows, columns) margins of a limit by theory from (2, rows, columns) equivalents.
 
     strength / (required factor x point factor x equivalent) - 1; infinite where there is no stress, NaN where
-    something is not known or not asked.
+    something is not known or not asked. Worked as allowable / equivalent / point factor, here, for groups and for
+    governing alike: margins beyond 1e7 differ by more than the tolerance when rounded another way.
     """
     factor = rating.factor[limit, rows][:, None]
     classes = rating.of_point[rows]
@@ -87,8 +88,8 @@ def margins_of(values: Array, rating: Rating, rows: Places, columns: Places | sl
     with np.errstate(divide="ignore", over="ignore", invalid="ignore"):
         for theory in range(2):
             allowable = rating.allowable[limit, theory][:, columns][classes]
-            np.multiply(values[theory], factor, out=found[theory])
-            np.divide(allowable, found[theory], out=found[theory])
+            np.divide(allowable, values[theory], out=found[theory])
+    found /= factor
     found -= 1.0
     return found
 
@@ -97,7 +98,7 @@ def few_margins(values: Array, rating: Rating, rows: Places, columns: Places, li
     """(limits, 2, rows, columns) margins of a few cells, the first so many of LIMITS at once: fewer, smaller steps."""
     allowable = rating.allowable[:limits][..., columns].take(rating.of_point[rows], axis=2)
     with np.errstate(divide="ignore", over="ignore", invalid="ignore"):
-        found: Array = allowable / (values * rating.factor[:limits, None, rows, None])
+        found: Array = allowable / values / rating.factor[:limits, None, rows, None]
     found -= 1.0
     return found
 
@@ -179,7 +180,7 @@ def govern(
         for limit in rating.limits:
             allowable = rating.allowable[limit, theory].reshape(-1).take(at)
             with np.errstate(divide="ignore", over="ignore", invalid="ignore"):
-                margins = allowable / (equivalent * rating.factor[limit, rows][:, None]) - 1.0
+                margins = allowable / equivalent / rating.factor[limit, rows][:, None] - 1.0
                 np.less_equal(margins, bound[:, None], out=within[limit])
         place = np.argmax(within[0] | within[1], axis=1)
         row = np.arange(len(rows))
