@@ -54,7 +54,7 @@ class Insert:
 
 @dataclass(frozen=True, slots=True)
 class Remove:
-    """Take a part away that nothing refers to (see `engine.references.removal` for one that something does)."""
+    """Take a part away that nothing refers to (see `engine.removal.removal` for one that something does)."""
 
     kind: Kind
     """Kind of part."""
@@ -159,15 +159,17 @@ def inverse(project: Project, edit: Edit) -> Edit:
     """The edit that takes `edit` back, given the project before it. Raises Refusal where it does not apply."""
     match edit:
         case Set():
-            return replace(edit, value=_plain(_part(project, edit.kind, edit.name), edit.kind, edit.path))
+            return _inverse_set(project, edit)
         case Insert():
             return Remove(edit.kind, str(edit.document.get("name", "")))
         case Remove():
+            _kind(edit.kind)
             document = CODEC.write(edit.kind, _part(project, edit.kind, edit.name))
             return Insert(edit.kind, project.index(edit.kind, edit.name), document)
         case Rename():
             return Rename(edit.kind, edit.new, edit.old)
         case Move():
+            _kind(edit.kind)
             _part(project, edit.kind, edit.name)
             return replace(edit, index=project.index(edit.kind, edit.name))
         case Acknowledge():
@@ -181,6 +183,15 @@ def inverse(project: Project, edit: Edit) -> Edit:
                 back.append(inverse(project, step))
                 project = apply(project, step)
             return Batch(tuple(reversed(back)), edit.label)
+
+
+def _inverse_set(project: Project, edit: Set) -> Set:
+    part = _part(project, edit.kind, edit.name)
+    if len(edit.path) > 1:
+        table = _plain(part, edit.kind, edit.path[:-1])
+        if isinstance(table, Mapping) and not table:  # an empty table that was written out comes back as one
+            return replace(edit, path=edit.path[:-1], value={})
+    return replace(edit, value=_plain(part, edit.kind, edit.path))
 
 
 def describe(project: Project, edit: Edit) -> str:
@@ -248,6 +259,8 @@ def _with(project: Project, kind: Kind, parts: tuple[Entity, ...]) -> Project:
 
 def _plain(part: Any, kind: str, path: tuple[str, ...]) -> Plain:
     """The plain value at a path, None where it is absent."""
+    if not path:
+        raise Refusal("an edit of nothing")
     document = part.dimensions if kind == "section" and path[0] in part.dimensions else None
     if document is not None:
         return document[path[0]]
@@ -256,6 +269,8 @@ def _plain(part: Any, kind: str, path: tuple[str, ...]) -> Plain:
     except KeyError:
         raise Refusal(f"a {kind} has no {shown(path[0])}") from None
     value = getattr(part, key.attribute)
+    if len(path) == 1 and isinstance(value, StressRows):
+        return key.write(value) if len(value) else None
     if len(path) == 2 and isinstance(value, StressRows):
         row = value.get(path[1])
         return None if row is None else row.tolist()

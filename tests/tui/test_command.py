@@ -13,6 +13,7 @@ import pytest
 
 import tui
 from tui import command
+from tui.app import HexlipseApp
 from tui.command import main
 from tui.words import CAUTION
 
@@ -20,6 +21,22 @@ from .app_tools import DEMO, written
 from .test_check import COMMAND, PASSING
 
 Printed = Callable[..., tuple[int, str, str]]
+
+
+@pytest.fixture(autouse=True)
+def shown(monkeypatch: pytest.MonkeyPatch) -> list[tuple[HexlipseApp, bool]]:
+    """The screens that were run, each with whether it takes the mouse; none is really opened."""
+    found: list[tuple[HexlipseApp, bool]] = []
+    monkeypatch.setattr(HexlipseApp, "run", lambda app, mouse=True: found.append((app, mouse)))
+    return found
+
+
+@pytest.fixture
+def terminal(monkeypatch: pytest.MonkeyPatch, capsys: pytest.CaptureFixture[str]) -> None:
+    """A terminal that can place text."""
+    monkeypatch.setattr(sys.stdin, "isatty", lambda: True)
+    monkeypatch.setattr(sys.stdout, "isatty", lambda: True)
+    monkeypatch.setenv("TERM", "xterm-256color")
 
 
 @pytest.fixture
@@ -81,27 +98,50 @@ def test_a_wrong_call_ends_with_two_and_shows_how_it_is_called(run: Printed, wor
 
 
 @pytest.mark.parametrize("words", [[], ["winch.toml"], ["--ascii", "--no-mouse", "winch.toml"]])
-def test_without_a_terminal_the_screen_is_refused_with_a_way_out(run: Printed, words: list[str]) -> None:
+def test_without_a_terminal_the_screen_is_refused_with_a_way_out(
+    run: Printed, shown: list[tuple[HexlipseApp, bool]], words: list[str]
+) -> None:
     status, out, err = run(*words)
-    assert (status, out) == (2, "")
+    assert (status, out, shown) == (2, "", [])
     assert "needs a terminal" in err
     assert "hexlipse check FILE" in err
 
 
+@pytest.mark.usefixtures("terminal")
 @pytest.mark.parametrize("term", ["dumb", "", "unknown", None])
 def test_a_terminal_that_cannot_place_text_is_refused(
-    run: Printed, monkeypatch: pytest.MonkeyPatch, term: str | None
+    run: Printed, shown: list[tuple[HexlipseApp, bool]], monkeypatch: pytest.MonkeyPatch, term: str | None
 ) -> None:
-    monkeypatch.setattr(sys.stdin, "isatty", lambda: True)
-    monkeypatch.setattr(sys.stdout, "isatty", lambda: True)
     if term is None:
         monkeypatch.delenv("TERM", raising=False)
     else:
         monkeypatch.setenv("TERM", term)
     status, out, err = run("winch.toml")
-    assert (status, out) == (2, "")
+    assert (status, out, shown) == (2, "", [])
     assert "TERM" in err
     assert "hexlipse check FILE" in err
+
+
+@pytest.mark.usefixtures("terminal")
+def test_on_a_terminal_the_screen_is_run_as_the_options_say(
+    run: Printed, shown: list[tuple[HexlipseApp, bool]]
+) -> None:
+    assert run("winch.toml")[0] == 0
+    assert run("--no-mouse", "--ascii")[0] == 0
+    (first, mouse), (second, no_mouse) = shown
+    assert (first._path, mouse) == (Path("winch.toml"), True)
+    assert (second._path, second._ascii, no_mouse) == (None, True, False)
+
+
+@pytest.mark.usefixtures("terminal")
+@pytest.mark.parametrize(("variable", "mode"), [("NO_COLOR", "mono"), ("TEXTUAL_NOTHING", "colour")])
+def test_no_color_is_heeded(
+    run: Printed, shown: list[tuple[HexlipseApp, bool]], monkeypatch: pytest.MonkeyPatch, variable: str, mode: str
+) -> None:
+    monkeypatch.delenv("NO_COLOR", raising=False)
+    monkeypatch.setenv(variable, "1")
+    run("winch.toml")
+    assert shown[0][0]._palette.mode == mode
 
 
 @pytest.mark.parametrize(
