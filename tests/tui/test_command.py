@@ -31,12 +31,11 @@ def shown(monkeypatch: pytest.MonkeyPatch) -> list[tuple[HexlipseApp, bool]]:
     return found
 
 
-@pytest.fixture
-def terminal(monkeypatch: pytest.MonkeyPatch, capsys: pytest.CaptureFixture[str]) -> None:
-    """A terminal that can place text."""
+def at_a_terminal(monkeypatch: pytest.MonkeyPatch, term: str = "xterm-256color") -> None:
+    """Make the streams those of a terminal."""
     monkeypatch.setattr(sys.stdin, "isatty", lambda: True)
     monkeypatch.setattr(sys.stdout, "isatty", lambda: True)
-    monkeypatch.setenv("TERM", "xterm-256color")
+    monkeypatch.setenv("TERM", term)
 
 
 @pytest.fixture
@@ -107,25 +106,23 @@ def test_without_a_terminal_the_screen_is_refused_with_a_way_out(
     assert "hexlipse check FILE" in err
 
 
-@pytest.mark.usefixtures("terminal")
 @pytest.mark.parametrize("term", ["dumb", "", "unknown", None])
 def test_a_terminal_that_cannot_place_text_is_refused(
     run: Printed, shown: list[tuple[HexlipseApp, bool]], monkeypatch: pytest.MonkeyPatch, term: str | None
 ) -> None:
+    at_a_terminal(monkeypatch, term or "")
     if term is None:
-        monkeypatch.delenv("TERM", raising=False)
-    else:
-        monkeypatch.setenv("TERM", term)
+        monkeypatch.delenv("TERM")
     status, out, err = run("winch.toml")
     assert (status, out, shown) == (2, "", [])
     assert "TERM" in err
     assert "hexlipse check FILE" in err
 
 
-@pytest.mark.usefixtures("terminal")
 def test_on_a_terminal_the_screen_is_run_as_the_options_say(
-    run: Printed, shown: list[tuple[HexlipseApp, bool]]
+    run: Printed, shown: list[tuple[HexlipseApp, bool]], monkeypatch: pytest.MonkeyPatch
 ) -> None:
+    at_a_terminal(monkeypatch)
     assert run("winch.toml")[0] == 0
     assert run("--no-mouse", "--ascii")[0] == 0
     (first, mouse), (second, no_mouse) = shown
@@ -133,11 +130,11 @@ def test_on_a_terminal_the_screen_is_run_as_the_options_say(
     assert (second._path, second._ascii, no_mouse) == (None, True, False)
 
 
-@pytest.mark.usefixtures("terminal")
 @pytest.mark.parametrize(("variable", "mode"), [("NO_COLOR", "mono"), ("TEXTUAL_NOTHING", "colour")])
 def test_no_color_is_heeded(
     run: Printed, shown: list[tuple[HexlipseApp, bool]], monkeypatch: pytest.MonkeyPatch, variable: str, mode: str
 ) -> None:
+    at_a_terminal(monkeypatch)
     monkeypatch.delenv("NO_COLOR", raising=False)
     monkeypatch.setenv(variable, "1")
     run("winch.toml")
