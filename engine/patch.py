@@ -35,6 +35,7 @@ class Patch:
     """New values of the cells that differ, and the Envelope of the whole project with them."""
 
     __slots__ = (
+        "_at",
         "_base",
         "_column_hydrostatic",
         "_column_values",
@@ -101,11 +102,11 @@ class Patch:
         self._groups = np.array(sorted({int(column) // GROUP for column in columns}), dtype=np.intp)
         if not len(columns):
             return
-        local = slice(None) if len(steady) == points else steady
-        new = equivalents_of(table.influence, self.sets, self.rating, steady, columns, table.of_case, local)
+        self._at = slice(None) if len(steady) == points else steady
+        new = equivalents_of(table.influence, self.sets, self.rating, steady, columns, table.of_case, self._at)
         self._column_values, self._column_hydrostatic = new.values, new.hydrostatic
-        before = table.values[:, steady[:, None], columns]
-        self._count(steady, before, new.values, table.hydrostatic[steady[:, None], columns], new.hydrostatic)
+        before = table.values[:, self._at][:, :, columns]
+        self._count(steady, before, new.values, table.hydrostatic[self._at][:, columns], new.hydrostatic)
         self._govern_columns(steady, before)
 
     def _count(self, rows: Places, before: Array, after: Array, tense: Flags, tense_after: Flags) -> None:
@@ -119,7 +120,7 @@ class Patch:
         """Least margins of the touched groups; points whose least the columns had or now have are governed again."""
         table, columns = self._base, self._columns
         limits = 1 + max(*table.rating.limits, *self.rating.limits)
-        least = table.group_least[:, :, steady[:, None], self._groups]
+        least = table.group_least[:, :, self._at][:, :, :, self._groups]
         place = np.searchsorted(self._groups, columns // GROUP)
         old = few_margins(before, table.rating, steady, columns, limits)
         new = few_margins(self._column_values, self.rating, steady, columns, limits)

@@ -79,7 +79,8 @@ class Page(ModalScreen[None]):
         self._text = text
 
     def compose(self) -> ComposeResult:
-        with VerticalScroll(can_focus=False):
+        with VerticalScroll(can_focus=False) as area:
+            area.border_subtitle = "esc closes, arrows and page keys move"
             yield Static(self._text, markup=False)
 
     def action_scroll(self, lines: int) -> None:

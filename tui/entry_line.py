@@ -154,7 +154,9 @@ class EntryLine(Static):
         why = f"  {visible(self._why)}" if self._why else ""
         room = max(8, width - cell_len(label) - min(cell_len(why), width // 2) - 1)
         editor = self._editor
-        start = max(0, editor.cursor - room + 1)
+        start = editor.cursor
+        while start > 0 and cell_len(visible(editor.text[start - 1 : editor.cursor])) < room:
+            start -= 1
         shown, after = editor.text[start : editor.cursor], editor.text[editor.cursor :]
         tail = max(0, room - len(shown))
         line = Text(label, self._palette.style("plain here"))

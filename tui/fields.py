@@ -78,6 +78,13 @@ def _list_text(value: Plain, form: Form) -> str:
     return " ".join(text_of(item, "text") for item in value)
 
 
+def fitting(value: float, room: int) -> str:
+    """A number as a person would type it where that fits, else rounded to what does: "Here" says it whole."""
+    rounded = (number_text(float(f"{value:.{digits}g}")) for digits in range(15, 0, -1))
+    text = number_text(value)
+    return text if len(text) <= room else next((short for short in rounded if len(short) <= room), text)
+
+
 def plain_from(text: str, field: Field, system: UnitSystem) -> Plain:
     """The plain value an entry means; None for an empty one: the key goes. Raises EntryError or Refusal."""
     text = text.strip()

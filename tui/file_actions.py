@@ -96,6 +96,9 @@ class FileActions:
 
     def action_save_as(self) -> None:
         """Write the file under another name, and work on in that one."""
+        self._ask_name()
+
+    def _ask_name(self, then: Callable[[], None] | None = None) -> None:
         start = str(self.document.path) if self.document.path else ""
 
         def submit(text: str) -> str | None:
@@ -107,16 +110,16 @@ class FileActions:
             if path.suffix != ".toml":
                 path = path.with_name(path.name + ".toml")
             if os.path.exists(path) and path != self.document.path:
-                self._ask_overwrite(path)
+                self._ask_overwrite(path, then)
                 return None
-            return self.save(path)
+            return self.save(path, then)
 
         self.line.ask(Request("save as", start, submit))
 
-    def _ask_overwrite(self, path: Path) -> None:
+    def _ask_overwrite(self, path: Path, then: Callable[[], None] | None) -> None:
         text = f"{path.name} exists already. The file before it is kept as {path.name}~."
         options = [("o", "yes", f"overwrite {path.name}")]
-        self.app.push_screen(Question(text, options), lambda answer: self.save(path) if answer else None)
+        self.app.push_screen(Question(text, options), lambda answer: self.save(path, then) if answer else None)
 
     def action_reload(self) -> None:
         """Read the file again."""
@@ -152,7 +155,7 @@ class FileActions:
         if answer == "leave":
             self.app.exit(return_code=0)
         elif answer == "save" and self.document.path is None:
-            self.action_save_as()
+            self._ask_name(then=lambda: self.app.exit(return_code=0))
         elif answer == "save":
             self._save_here(then=lambda: self.app.exit(return_code=0))
 

@@ -15,7 +15,7 @@ from engine.table import MarginTable
 from engine.units import SYSTEMS, UnitSystem, kind_of_load_unit
 
 from .document import Document
-from .fields import Field, plain_from, plain_of, text_of
+from .fields import Field, fitting, plain_from, plain_of, text_of
 from .grid import Cell
 from .palette import MARKS, VERDICT_ROLES, Runs, cut
 from .sheet import WorkSheet
@@ -97,9 +97,9 @@ class LoadsSheet(WorkSheet):
             return Cell(text, align="right" if field.form == "number" else "left")
         own = case.loads.get(self._loads[column].name)
         if not case.combine:
-            return Cell("" if own is None else number_text(own))
+            return Cell("" if own is None else fitting(own, self.width(column) - 2))
         total = float(self.document.table.sets.magnitudes[row, column])
-        return Cell(_clean_sum(total) if total or own is not None else "", "dim", "+")
+        return Cell(fitting(total, self.width(column) - 2) if total or own is not None else "", "dim", "+")
 
     def frozen_width(self, room: int) -> int:
         return self._name_width(room) + 10

@@ -32,6 +32,8 @@ _SHOWN_THEORY: dict[Theory, str] = {
     "von-mises": "von Mises",
     "difference": "Tresca less von Mises",
 }
+_NOTHING = "-"
+"""What a cell shows that has nothing to show, though nothing is missing: a limit not asked for, no stress to compare."""
 _SHOWN_LIMIT: dict[Limit, str] = {"all": "all limits", "yield": "yield", "ultimate": "ultimate"}
 
 
@@ -147,7 +149,9 @@ class MarginsSheet(WorkSheet):
     def _texts(self, row: slice, columns: Sequence[int], block: Block) -> list[str]:
         match self.show.quantity:
             case "margin":
-                return margin_texts(self._chosen(block.margins)[0])
+                bare = np.isinf(block.margins).all(axis=0)[0] & (self.show.theory == "difference")
+                texts = margin_texts(self._chosen(block.margins)[0])
+                return [_NOTHING if none else text for text, none in zip(texts, bare, strict=True)]
             case "utilisation":
                 with np.errstate(divide="ignore", invalid="ignore"):
                     used = 1.0 / (1.0 + block.margins)
@@ -179,9 +183,19 @@ class MarginsSheet(WorkSheet):
         texts = self._texts(run, columns, block)
         governs = self.document.table.envelope.of_point(row).case
         return [
-            self._cell(text, int(code), column == governs)
-            for text, code, column in zip(texts, block.verdicts[0], columns, strict=True)
+            self._cell(text, int(code), column == governs) if asked else self._not_asked(text)
+            for text, code, column, asked in zip(texts, block.verdicts[0], columns, self._asked(columns), strict=True)
         ]
+
+    def _asked(self, columns: Sequence[int]) -> npt.NDArray[np.bool_]:
+        """Whether the categories of these cases ask for a limit that is shown: what nobody asks for lacks no data."""
+        asked: npt.NDArray[np.bool_] = self.document.table.rating.asked[self.show.limits()][:, list(columns)].any(
+            axis=0
+        )
+        return asked
+
+    def _not_asked(self, text: str) -> Cell:
+        return Cell(f"{text if self.show.quantity == 'equivalent' else _NOTHING} ", "dim")
 
     @staticmethod
     def _cell(text: str, code: int, governs: bool = False) -> Cell:
@@ -208,7 +222,10 @@ class MarginsSheet(WorkSheet):
         used = self.show.quantity == "utilisation"
         with np.errstate(divide="ignore"):
             texts = [utilisation_text(float(u)) for u in 1.0 / (1.0 + chosen)] if used else margin_texts(chosen)
-        return [self._cell(text, int(code)) for text, code in zip(texts, codes, strict=True)]
+        return [
+            self._cell(text, int(code)) if asked else self._not_asked(text)
+            for text, code, asked in zip(texts, codes, self._asked(columns), strict=True)
+        ]
 
     def footer_frozen(self, index: int, room: int) -> Runs:
         if self.show.quantity == "equivalent" or self.show.theory == "difference":

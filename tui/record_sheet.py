@@ -10,7 +10,7 @@ from engine.project import Kind
 from engine.units import SYSTEMS, UnitSystem
 
 from .document import Document
-from .fields import Field, plain_from, plain_of, text_of
+from .fields import Field, fitting, plain_from, plain_of, text_of
 from .grid import Cell
 from .palette import Runs, cut
 from .sheet import Opening, WorkSheet
@@ -135,7 +135,9 @@ class RecordSheet(WorkSheet):
         return [self._cell(row, column) for column in columns]
 
     def _cell(self, row: int, column: int) -> Cell:
-        text = self.text(row, column)
+        field, text = self.fields[column], self.text(row, column)
+        if field.form == "number" and text:
+            text = fitting(float(plain_of(self.kind, self._parts[row], field.path)), field.width - 2)
         numeric = self._align(column) == "right" or (self.fields[column].form == "table" and "=" not in text)
         return Cell(text, align="right" if numeric else "left")
 

@@ -17,6 +17,7 @@ from engine.stress import COMPONENTS, permutation
 from engine.units import SYSTEMS
 
 from .document import Document
+from .fields import fitting
 from .grid import Cell
 from .palette import Runs, cut
 from .sheet import WorkSheet
@@ -85,7 +86,8 @@ class StressSheet(WorkSheet):
         given = self._rows.get(self.row_name(row))
         if given is None:
             return [Cell(".", "dim") for _ in columns]
-        return [Cell(number_text(float(given[COMPONENTS.index(self._order[c])]))) for c in columns]
+        room = self.width(0) - 2
+        return [Cell(fitting(float(given[COMPONENTS.index(self._order[c])]), room)) for c in columns]
 
     def here(self, row: int, column: int) -> list[Runs]:
         name = self.row_name(row)
@@ -94,7 +96,8 @@ class StressSheet(WorkSheet):
         if given is None:
             text = "no row yet: type all six components, zeros too"
             return [title, [(f" {'row':<10} ", "dim"), (text, "nodata")]]
-        return [title, *self._state_lines(given)]
+        whole = number_text(float(given[COMPONENTS.index(self._order[column])]))
+        return [[*title, (f" = {whole}", "plain")], *self._state_lines(given)]
 
     def _state_lines(self, given: Array) -> list[Runs]:
         tresca, mises = (float(value) for value in criteria.equivalents(given))

@@ -106,6 +106,16 @@ async def test_a_name_of_any_length_leaves_the_entry_and_its_refusal_to_be_seen(
         assert "2.5 MPa" in hand.lines[-1]
 
 
+async def test_of_a_long_entry_the_part_at_the_cursor_is_seen_be_it_wide_or_not(tmp_path: Path) -> None:
+    async with opened(written(tmp_path, NO_STRESS)) as hand:
+        await hand.press("f4", *["right"] * 7, "enter")
+        for typed in ("x" * 150, "荷重" * 75):
+            await hand.press("ctrl+u", *typed, *"end")
+            assert hand.lines[-1].endswith("end"), typed
+            await hand.press("home")
+            assert hand.lines[-1].startswith(f" P01 label: {typed[:20]}")
+
+
 async def test_what_names_hold_does_nothing_to_the_screen(tmp_path: Path) -> None:
     async with opened(written(tmp_path, huge_names("[red]\u202e\u200b{x}"))) as hand:
         for key in ("f2", "f3", "f4", "f9", "f10"):

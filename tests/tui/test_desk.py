@@ -225,6 +225,7 @@ async def test_the_page_of_keys_lists_every_binding_and_leads_back(hand: Hand) -
         await hand.press(key)
         assert isinstance(hand.app.screen, Page)
         assert "The Margins sheet" in hand.text
+        assert "esc closes" in hand.text
         await hand.press("escape")
         assert isinstance(hand.app.screen, Desk)
 

@@ -8,7 +8,7 @@ from engine.edits import CODEC, Refusal
 from engine.entry import EntryError
 from engine.reading import Plain
 from engine.units import SYSTEMS
-from tui.fields import Field, Form, plain_from, plain_of, text_of
+from tui.fields import Field, Form, fitting, plain_from, plain_of, text_of
 
 MM = SYSTEMS["mm-N-MPa"]
 
@@ -117,3 +117,22 @@ def test_plain_values_are_found_at_their_path() -> None:
     assert plain_of("category", category, ("yield", "von-mises")) == 1.4
     assert plain_of("category", category, ("ultimate", "tresca")) is None
     assert plain_of("category", category, ("label",)) is None
+
+
+@pytest.mark.parametrize(
+    ("value", "room", "text"),
+    [
+        (345.0, 8, "345"),
+        (-127.83421, 8, "-127.834"),  # rounded to what fits, as a person would
+        (127.83429, 8, "127.8343"),
+        (344.7378646584, 8, "344.7379"),  # 50 ksi in MPa
+        (1234567.89, 8, "1234568"),
+        (0.000123456789, 8, "1.235e-4"),
+        (-1.23456e-300, 8, "-1e-300"),
+        (12345678901.0, 8, "1.235e10"),
+        (1 / 3, 12, "0.3333333333"),
+        (-1.23456e-300, 3, "-1.23456e-300"),  # no room for any: the grid says ###
+    ],
+)
+def test_a_number_is_rounded_to_the_room_it_has_and_never_cut(value: float, room: int, text: str) -> None:
+    assert fitting(value, room) == text

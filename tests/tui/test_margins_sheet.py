@@ -10,7 +10,7 @@ from tui.document import Document
 from tui.margins_sheet import MarginsSheet, Show
 
 from .app_tools import DEMO
-from .small_projects import EMPTY, NO_STRESS, ONLY_CASES, ONLY_POINTS, UNCOMPUTED
+from .small_projects import BRITTLE, EMPTY, NO_STRESS, ONLY_CASES, ONLY_POINTS, UNCOMPUTED
 
 POINTS = {name: i for i, name in enumerate(f"P{n:02d}" for n in range(1, 13))}
 CASES = {name: i for i, name in enumerate(f"LC{n:02d}" for n in range(1, 19))}
@@ -98,6 +98,31 @@ def test_a_cell_shows_what_the_third_line_says(show: Show, text: str, says: str)
     sheet.show = show
     assert shown(sheet, "P02", "LC09")[0] == text
     assert sheet.shows() == says
+
+
+def test_a_limit_that_is_not_asked_for_lacks_no_data() -> None:
+    sheet = opened(BRITTLE)
+    assert sheet.cells(0, [0])[0].mark == " "
+    for show, text in (
+        (Show(limit="ultimate"), "-"),
+        (Show(limit="ultimate", quantity="utilisation"), "-"),
+        (Show(limit="ultimate", quantity="equivalent"), "10.00"),
+    ):
+        sheet.show = show
+        cell = sheet.cells(0, [0])[0]
+        assert (cell.text.strip(), cell.mark) == (text, " ")
+    sheet.show = Show(limit="ultimate")
+    foot = sheet.footer(0, [0])[0]
+    assert (foot.text.strip(), foot.mark) == ("-", " ")
+
+
+def test_without_stress_there_is_nothing_to_compare_and_nothing_missing() -> None:
+    sheet = opened()
+    sheet.show = Show("difference")
+    assert shown(sheet, "P01", "LC05") == ("-", " ")
+    assert shown(sheet, "P12", "LC10") == (".", "?")
+    sheet.show = Show("difference", quantity="utilisation")
+    assert shown(sheet, "P01", "LC05") == ("+0.00", " ")
 
 
 @pytest.mark.parametrize("quantity", ["margin", "utilisation", "equivalent"])

@@ -105,3 +105,24 @@ async def test_a_new_unnamed_project_asks_for_its_name_when_saved(
         assert hand.message == "saved first.toml"
         assert not hand.document.dirty
     assert state.recent() == [tmp_path / "first.toml"]
+
+
+async def test_leaving_a_new_unnamed_project_can_name_it_save_it_and_leave(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    monkeypatch.chdir(tmp_path)
+    written(tmp_path, BRITTLE, "taken.toml")
+    async with opened(None) as hand:
+        await hand.press("n")
+        await hand.enter("Winch", "1", "S355", "345", "", "normal", "1.5", "1.5", "1", "0.1", "LC01", "P01")
+        await hand.press("ctrl+q")
+        await hand.press("s")
+        await hand.enter("taken")
+        await hand.press("escape")  # not over another file
+        assert hand.app.return_code is None
+        await hand.press("ctrl+q")
+        await hand.press("s")
+        await hand.enter("first")
+        await hand.until(lambda: hand.app.return_code == 0, "leaving")
+    assert (tmp_path / "first.toml").is_file()
+    assert (tmp_path / "taken.toml").read_text() == BRITTLE

@@ -115,6 +115,14 @@ def test_per_load_rows_are_those_of_the_loads_and_say_so() -> None:
     assert "tension positive" in sheet.shows()
 
 
+def test_a_long_number_is_rounded_in_its_column_and_whole_below() -> None:
+    sheet = opened(BRITTLE.replace("[10.0,", "[-127.83421,"))
+    assert sheet.cells(0, [0])[0].text == "-127.834"
+    assert "xx = -127.83421" in said(sheet, 0, 0)
+    assert sheet.initial(0, 0) == "-127.83421"
+    assert sheet.edit(0, 0, "-127.83421") is None
+
+
 def test_here_says_principals_and_both_equivalents_of_the_row() -> None:
     words = said(opened(BRITTLE.replace("[10.0, 0, 0, 0, 0, 0]", "[120.0, 0, 0, 45.0, 0, 0]")), 0, 0)
     # bending 120 with torsion 45 (head of the demo): sqrt(120^2 + 4 x 45^2) = 150, sqrt(120^2 + 3 x 45^2) = 143.1
