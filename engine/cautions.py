@@ -206,10 +206,10 @@ def _text(table: MarginTable, row: int, name: str) -> str:
         case "no-source-stress":
             return "no source is given for the stresses of this point"
         case "no-temperature":
-            column, case = _first(table, np.isnan(rating.temperature[place]))
+            _, case = _first(table, np.isnan(rating.temperature[place]))
             return f"{case} has no temperature, and {material.name} has a table; the plain values were used"
         case "ultimate-temperature":
-            column, case = _first(table, _plain_ultimate(material, rating, place))
+            _, case = _first(table, _plain_ultimate(material, rating, place))
             return f"{material.name} has no ultimate-at: the plain ultimate was used in {case}"
         case _:
             _, case = _first(table, _elastic(table, slice(row, row + 1))[0])

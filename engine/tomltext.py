@@ -41,7 +41,7 @@ _PLAIN = (
     ("Found invalid character '\\n'", "found the end of the line in a text, expected its closing quote"),
     ("Illegal character", "found {word}, a control character, expected none in a text"),
     ("Found invalid character", "found {word}, a control character, expected none"),
-    ('Expected "\'', "found {word} in a text, expected its closing quotes"),
+    ("Expected \"'", "found {word} in a text, expected its closing quotes"),
     ("Expected '\"", "found {word} in a text, expected its closing quotes"),
 )
 

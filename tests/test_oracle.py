@@ -432,7 +432,7 @@ def test_a_project_passes_by_the_theory_it_accepts() -> None:
     "extra", ['[[section]]\nname = "s"\n', '[[load]]\nname = "r"\nsense = "reversible"\n', POINT + 'section = "s"\n']
 )
 def test_what_the_oracle_cannot_compute_it_refuses(extra: str) -> None:
-    with pytest.raises(ValueError):
+    with pytest.raises(ValueError, match="not"):
         report(HEAD + extra)
 
 

@@ -33,7 +33,7 @@ _SHOWN_THEORY: dict[Theory, str] = {
     "difference": "Tresca less von Mises",
 }
 _NOTHING = "-"
-"""What a cell shows that has nothing to show, though nothing is missing: a limit not asked for, no stress to compare."""
+"""What a cell shows that has nothing to show, though nothing is missing: a limit not asked, no stress to compare."""
 _SHOWN_LIMIT: dict[Limit, str] = {"all": "all limits", "yield": "yield", "ultimate": "ultimate"}
 
 
