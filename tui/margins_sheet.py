@@ -149,7 +149,7 @@ class MarginsSheet(WorkSheet):
     def _texts(self, row: slice, columns: Sequence[int], block: Block) -> list[str]:
         match self.show.quantity:
             case "margin":
-                bare = np.isinf(block.margins).all(axis=0)[0] & (self.show.theory == "difference")
+                bare = np.asarray(np.isinf(block.margins).all(axis=0))[0] & (self.show.theory == "difference")
                 texts = margin_texts(self._chosen(block.margins)[0])
                 return [_NOTHING if none else text for text, none in zip(texts, bare, strict=True)]
             case "utilisation":
@@ -189,10 +189,8 @@ class MarginsSheet(WorkSheet):
 
     def _asked(self, columns: Sequence[int]) -> npt.NDArray[np.bool_]:
         """Whether the categories of these cases ask for a limit that is shown: what nobody asks for lacks no data."""
-        asked: npt.NDArray[np.bool_] = self.document.table.rating.asked[self.show.limits()][:, list(columns)].any(
-            axis=0
-        )
-        return asked
+        shown = self.document.table.rating.asked[self.show.limits()][:, list(columns)]
+        return np.asarray(shown.any(axis=0))
 
     def _not_asked(self, text: str) -> Cell:
         return Cell(f"{text if self.show.quantity == 'equivalent' else _NOTHING} ", "dim")
