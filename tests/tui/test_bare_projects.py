@@ -110,7 +110,7 @@ async def test_of_a_long_entry_the_part_at_the_cursor_is_seen_be_it_wide_or_not(
     async with opened(written(tmp_path, NO_STRESS)) as hand:
         await hand.press("f4", *["right"] * 7, "enter")
         for typed in ("x" * 150, "荷重" * 75):
-            await hand.press("ctrl+u", *typed, *"end")
+            await hand.press("end", "ctrl+u", *typed, *"end")
             assert hand.lines[-1].endswith("end"), typed
             await hand.press("home")
             assert hand.lines[-1].startswith(f" P01 label: {typed[:20]}")
