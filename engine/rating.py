@@ -78,11 +78,6 @@ class Rating:
         """Places in LIMITS of those that any case asks for; yield always is."""
         return [0, 1] if self.asked[1].any() else [0]
 
-    def of_row(self, row: int) -> Array:
-        """(2, 2, cases): allowable stress at a point, point factor included."""
-        allowable: Array = self.allowable[:, :, self.of_point[row]] / self.factor[:, row][:, None, None]
-        return allowable
-
 
 def _cell_temperature(given: float | FrozenMap[float] | None, plain: Array, cases: Sequence[Case]) -> Array:
     """The point's temperature, else the case's, by case."""

@@ -167,10 +167,10 @@ class Desk(PartActions, FileActions, TakeOnActions, Screen[None]):
         if self._not_taken:
             lines = said_lines("Not taken" if self.line.typing else "Not done", self._not_taken, self.size.width)
         lines = [*lines[:4], *([[("", "plain")]] * (4 - len(lines[:4]))), governs_line(self.document)]
-        self.query_one("#here", Static).update(Text("\n").join(self._text(runs) for runs in lines))
-        self.query_one("#rule", Static).update(
-            Text(self._plain("─" * max(self.size.width, 1)), self.palette.style("dim"))
-        )
+        here = Text("\n").join(self._text(runs) for runs in lines)
+        self.query_one("#here", Static).update(here, layout=False)  # heights are fixed: nothing to lay out anew
+        rule = Text(self._plain("─" * max(self.size.width, 1)), self.palette.style("dim"))
+        self.query_one("#rule", Static).update(rule, layout=False)
 
     def _plain(self, text: str) -> str:
         return plain_ascii(text) if self._ascii else text

@@ -144,7 +144,7 @@ class EntryLine(Static):
             if self._request is not None
             else Text(f" {visible(self._message)}", self._palette.style("plain"))
         )
-        self.update(fitted(line, width, self._ascii))
+        self.update(fitted(line, width, self._ascii), layout=False)
 
     def _entry(self, width: int) -> Text:
         """Label, what was typed with the cursor in it, why it was refused; of a long text the part at the cursor."""

@@ -43,7 +43,7 @@ class SummaryLines(Static):
             self._second(state, notes, width, typing),
             self._third(shows, where, width),
         ]
-        self.update(Text("\n").join(fitted(line, width, self._ascii) for line in lines))
+        self.update(Text("\n").join(fitted(line, width, self._ascii) for line in lines), layout=False)
 
     def _first(self, state: State, dirty: bool, width: int, typing: bool) -> Text:
         settings = state.project.settings

@@ -4,16 +4,11 @@ from __future__ import annotations
 
 from engine.envelope import Controls, Governing, Verdict
 from engine.material import LIMITS, Limit, Theory
-from engine.project import Accept, Project
+from engine.project import Project
 
 THEORY: dict[str, str] = {"tresca": "Tresca", "von-mises": "von Mises", "both": "both theories"}
 SHORT_THEORY: dict[str, str] = {"tresca": "Tresca", "von-mises": "Mises", "both": "both"}
 SHORT_LIMIT: dict[str, str] = {"yield": "yield", "ultimate": "ult."}
-ACCEPTS: dict[Accept, str] = {
-    "both": "both theories must pass",
-    "tresca": "Tresca must pass",
-    "von-mises": "von Mises must pass",
-}
 VERDICT: dict[Verdict, str] = {
     "clear": "clear",
     "thin": "thin",

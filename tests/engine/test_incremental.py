@@ -9,6 +9,7 @@ from typing import Any
 import numpy as np
 import pytest
 
+from engine import cells
 from engine import patch as patching
 from engine.cautions import blocking_flags
 from engine.edits import Batch, Edit, Insert, Move, Refusal, Remove, Rename, Set, apply, inverse
@@ -84,7 +85,8 @@ def check_envelope(found: Envelope, fresh: MarginTable) -> None:
 def test_after_every_step_a_wide_table_is_that_made_afresh(seed: int) -> None:
     chance = Random(seed)
     given = wide(seed)
-    table, undo, patched = compute(given), [], 0
+    table, patched = compute(given), 0
+    undo: list[Edit] = []
     for _ in range(40):
         step = undo.pop() if undo and chance.random() < 0.3 else any_step(chance, given)
         try:
@@ -191,14 +193,15 @@ def test_only_what_an_edit_touches_is_computed_again(
 ) -> None:
     before = base()
     table = compute(before)
-    kept, seen = table.values, set()
+    kept = table.values
+    seen: set[str] = set()
 
     def recorded(influence: Any, sets: Any, rating: Any, rows: Any, columns: Any, of_case: Any, local: Any) -> Any:
         seen.update(f"P{row}" for row in rows if len(columns) == 70)
         seen.update(str(column) for column in columns if len(columns) < 70)
         return whole(influence, sets, rating, rows, columns, of_case, local)
 
-    whole = patching.equivalents_of
+    whole = cells.equivalents_of
     monkeypatch.setattr(patching, "equivalents_of", recorded)
     after = apply(before, edit)
     table = compute(after, table)

@@ -78,15 +78,6 @@ def test_what_stress_may_reach_is_strength_over_required_factor() -> None:
     assert np.allclose(rating.allowable[:, :, 0, 0], [[200.0, 240.0], [225.0, 225.0]], rtol=1e-15)
 
 
-def test_what_stress_may_reach_at_a_point_counts_its_own_factors_by_limit() -> None:
-    given = [point("P", factor=(1.25, 2.0))]
-    rating = rated(
-        project(given, [case("A")], categories=[category("normal", 1.5, 3.0)], materials=[material(ultimate=450.0)])
-    )
-    assert rating.factor.tolist() == [[1.25], [2.0]]
-    assert np.allclose(rating.of_row(0)[:, :, 0], [[160.0, 160.0], [75.0, 75.0]], rtol=1e-15)
-
-
 def test_a_shear_yield_below_half_the_yield_makes_the_strength_of_tresca_alone() -> None:
     rating = rated(project([point("P")], [case("A")], materials=[material(ultimate=450.0, shear_yield=120.0)]))
     assert rating.strength[:, :, 0, 0].tolist() == [[240.0, 300.0], [450.0, 450.0]]
