@@ -179,6 +179,8 @@ class RecordSheet(WorkSheet):
         return self.text(row, column)
 
     def edit(self, row: int, column: int, text: str) -> Edit | None:
+        if text == self.initial(row, column):
+            return None  # as it stood: a load named "rest" must not turn into the word for all others
         field = self.fields[column]
         value = plain_from(text, field, self._system)
         old = plain_of(self.kind, self._parts[row], field.path)
